@@ -1,0 +1,14 @@
+//! Floor 1: ids, time, units, and what a door answers. Knows nothing of membranes.
+
+mod ids;
+mod receipt;
+mod time;
+mod units;
+
+pub use ids::{SourceId, Tag, TrainId};
+pub use receipt::{Counts, Outcome, Receipt, Rejection};
+pub use time::{
+    DAY_US, HOUR_US, Instant, LocalTime, MINUTE_US, SECOND_US, Span, TimeError, Wall, Zone,
+    parse_duration_us, zone_data_version,
+};
+pub use units::{Dimension, Unit};

@@ -1,0 +1,4 @@
+//! washbell
+pub mod base;
+pub mod plant;
+pub mod science;
