@@ -1,11 +1,13 @@
 //! Floor 1: ids, time, units, and what a door answers. Knows nothing of membranes.
 
 mod ids;
+mod readings;
 mod receipt;
 mod time;
 mod units;
 
 pub use ids::{SourceId, Tag, TrainId};
+pub use readings::{CellValue, Column};
 pub use receipt::{Counts, Outcome, Receipt, Rejection};
 pub use time::{
     DAY_US, HOUR_US, Instant, LocalTime, MINUTE_US, SECOND_US, Span, TimeError, Wall, Zone,
