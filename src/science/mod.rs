@@ -1,7 +1,19 @@
-//! stub
-/// How viscosity follows temperature.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub enum TemperatureLaw {
-    /// IAPWS SR6-08(2011).
-    Iapws,
-}
+//! Floor 2: physics and statistics on plain numbers, one method a file.
+//!
+//! Knows nothing of plants, trains, cycles or clocks. Every function states its unit, its range
+//! and its source; one that cannot answer returns `None`. Values are SI, temperatures degrees
+//! Celsius. `libm` stands in for the transcendental functions of `std`, whose last bits change
+//! with the processor.
+
+mod filtration;
+mod water;
+
+pub use filtration::{
+    STANDARD_GRAVITY_M_S2, flux_m_s, hydrostatic_pa, permeability, permeability_of_resistance,
+    resistance_1_m, resistance_of_permeability, tmp_cross_flow_pa, tmp_dead_end_pa,
+    tmp_submerged_pa,
+};
+pub use water::{
+    TemperatureLaw, UnknownTemperatureLaw, density_kg_m3, law_viscosity_pa_s, relative_viscosity,
+    viscosity_pa_s,
+};

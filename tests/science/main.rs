@@ -1,0 +1,6 @@
+//! The methods of floor 2 against tables that other programs and handbooks printed.
+//!
+//! The tables lie in `tests/data`, each with its origin in its first line.
+
+mod table;
+mod water;
