@@ -6,12 +6,21 @@
 //! with the processor.
 
 mod filtration;
+mod normal;
+mod regression;
+mod robust;
 mod water;
 
 pub use filtration::{
     STANDARD_GRAVITY_M_S2, flux_m_s, hydrostatic_pa, permeability, permeability_of_resistance,
     resistance_1_m, resistance_of_permeability, tmp_cross_flow_pa, tmp_dead_end_pa,
     tmp_submerged_pa,
+};
+pub use normal::{normal_cdf, normal_quantile, student_t_cdf, student_t_quantile};
+pub use regression::{LineErrors, LineFit, fit_line};
+pub use robust::{
+    HampelPoint, MAD_TO_SIGMA, hampel, mad_sigma, median, median_in_place, quantile,
+    weighted_median,
 };
 pub use water::{
     TemperatureLaw, UnknownTemperatureLaw, density_kg_m3, law_viscosity_pa_s, relative_viscosity,

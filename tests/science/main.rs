@@ -2,5 +2,6 @@
 //!
 //! The tables lie in `tests/data`, each with its origin in its first line.
 
+mod regression;
 mod table;
 mod water;
