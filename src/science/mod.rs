@@ -5,12 +5,16 @@
 //! Celsius. `libm` stands in for the transcendental functions of `std`, whose last bits change
 //! with the processor.
 
+mod autocorrelation;
 mod filtration;
 mod normal;
 mod regression;
 mod robust;
+mod theil_sen;
+mod trend_test;
 mod water;
 
+pub use autocorrelation::{Removed, autocorrelation, effective_number, lag1_autocorrelation};
 pub use filtration::{
     STANDARD_GRAVITY_M_S2, flux_m_s, hydrostatic_pa, permeability, permeability_of_resistance,
     resistance_1_m, resistance_of_permeability, tmp_cross_flow_pa, tmp_dead_end_pa,
@@ -22,6 +26,8 @@ pub use robust::{
     HampelPoint, MAD_TO_SIGMA, hampel, mad_sigma, median, median_in_place, quantile,
     weighted_median,
 };
+pub use theil_sen::{RobustLine, theil_sen};
+pub use trend_test::{HamedRao, TrendTest, mann_kendall, mann_kendall_hamed_rao};
 pub use water::{
     TemperatureLaw, UnknownTemperatureLaw, density_kg_m3, law_viscosity_pa_s, relative_viscosity,
     viscosity_pa_s,

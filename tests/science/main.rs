@@ -3,5 +3,7 @@
 //! The tables lie in `tests/data`, each with its origin in its first line.
 
 mod regression;
+mod robust;
 mod table;
+mod trend;
 mod water;
