@@ -2,6 +2,8 @@
 //!
 //! The tables lie in `tests/data`, each with its origin in its first line.
 
+mod cake;
+mod polarisation;
 mod regression;
 mod robust;
 mod table;
