@@ -1,4 +1,6 @@
 //! washbell
+pub mod advice;
+pub mod analysis;
 pub mod base;
 pub mod plant;
 pub mod science;

@@ -213,7 +213,7 @@ impl Zone {
                 LocalTime::Once(at(ambiguous.compatible().ok()?))
             }
             AmbiguousOffset::Fold { .. } => {
-                LocalTime::Twice(at(ambiguous.clone().earlier().ok()?), at(ambiguous.later().ok()?))
+                LocalTime::Twice(at(ambiguous.earlier().ok()?), at(ambiguous.later().ok()?))
             }
             AmbiguousOffset::Gap { .. } => LocalTime::Skipped(at(ambiguous.later().ok()?)),
         })
