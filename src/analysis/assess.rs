@@ -74,23 +74,22 @@ pub struct Memory {
     pub days: Vec<Day>,
     /// Whole days of the current run, all.
     pub run_days: u32,
-    /// Hours of the last days.
+    /// Hours of the last days, the day to be assessed included.
     pub hours: Vec<Hour>,
     /// How far the limits have come to counting.
     pub holds: Holds,
 }
 
-/// Takes a day that has ended further, and says what stands at its end.
+/// Takes a day that has ended further, and says what stands at its end. The memory already
+/// holds the day's hours; `cleans` are those that could be told at its end.
 pub fn assess(
     plant: &Plant,
     site: &Site,
     memory: &mut Memory,
     day: &Day,
-    hours: &[Hour],
     cleans: &[Clean],
 ) -> Assessment {
     let span = Span::new(day.start, day.end);
-    memory.hours.extend_from_slice(hours);
     let keep_from = day.end.plus(-HOURS_KEPT_US);
     let drop = memory.hours.partition_point(|h| h.start < keep_from);
     memory.hours.drain(..drop);
@@ -103,9 +102,12 @@ pub fn assess(
         runs::judge(run, recent, day.end);
     }
     let baseline = runs::baseline(site, &memory.runs, day.end);
-    for hour in hours.iter().filter(|h| run_start.is_none_or(|s| h.start >= s)) {
-        let resistance = baseline.map(|b| b.resistance_1_m);
-        limits::step(&mut memory.holds, hour, resistance, &site.train.limits);
+    let resistance = baseline.map(|b| b.resistance_1_m);
+    let Memory { holds, hours: recent, .. } = memory;
+    for hour in recent.iter().filter(|h| span.contains(h.start)) {
+        if run_start.is_none_or(|s| hour.start >= s) {
+            limits::step(holds, hour, resistance, &site.train.limits);
+        }
     }
     let in_clean = cleans.iter().any(|c| Span::new(c.start, c.end).overlaps(span));
     if !in_clean && run_start.is_none_or(|s| day.start >= s) {
@@ -138,12 +140,16 @@ pub fn assess(
     out
 }
 
-/// A clean counts once its train is back.
+/// A clean that reaches up to midnight goes on.
 fn ended_within(clean: &Clean, day: Span) -> bool {
-    day.from < clean.end && clean.end <= day.to
+    day.contains(clean.end)
 }
 
 fn begin_run(site: &Site, memory: &mut Memory, clean: &Clean) {
+    // Steps on both sides of a midnight with a long rinse between them are one clean after all.
+    if memory.runs.last().is_some_and(|r| r.clean_start == clean.start) {
+        memory.runs.pop();
+    }
     let run = runs::open(site, clean, &memory.runs, &memory.hours);
     memory.runs.push(run);
     memory.days.clear();

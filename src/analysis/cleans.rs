@@ -79,19 +79,20 @@ pub fn phase_rows(train: &TrainId, spans: &[PhaseSpan], day: Span) -> Vec<PhaseR
 }
 
 /// Joins the pieces that the state shows and what people recorded to one list, in order of
-/// time. A recorded clean stands for the pieces it overlaps.
-pub fn cleans(phases: &[PhaseRow], recorded: &[RecordedClean]) -> Vec<Clean> {
+/// time, as it could be told at `until`. A recorded clean stands for the pieces it overlaps.
+pub fn cleans(phases: &[PhaseRow], recorded: &[RecordedClean], until: Instant) -> Vec<Clean> {
     let mut seen: Vec<Span> = Vec::new();
-    for row in phases.iter().filter(|p| p.phase == Phase::CleanInPlace) {
+    for row in phases.iter().filter(|p| p.phase == Phase::CleanInPlace && p.start < until) {
+        let end = row.end.min(until);
         match seen.last_mut() {
-            Some(last) if row.start.since(last.to) <= JOIN_US => last.to = last.to.max(row.end),
-            _ => seen.push(Span::new(row.start, row.end)),
+            Some(last) if row.start.since(last.to) <= JOIN_US => last.to = last.to.max(end),
+            _ => seen.push(Span::new(row.start, end)),
         }
     }
     seen.retain(|s| s.length_us() >= SHORTEST_US);
     let mut out: Vec<Clean> = recorded
         .iter()
-        .filter(|r| r.kind == Phase::CleanInPlace)
+        .filter(|r| r.kind == Phase::CleanInPlace && r.start < until)
         .map(|r| Clean { start: r.start, end: r.end, origin: Origin::Recorded(r.id.clone()) })
         .collect();
     for piece in seen {
@@ -125,9 +126,11 @@ mod tests {
 
     #[test]
     fn pieces_on_both_sides_of_midnight_are_one_clean() {
-        let list = cleans(&[piece(20, 24), piece(24, 28), piece(60, 68)], &[]);
+        let list = cleans(&[piece(20, 24), piece(24, 28), piece(60, 68)], &[], at(100));
         assert_eq!(list.len(), 2);
         assert_eq!((list[0].start, list[0].end), (at(20), at(28)));
+        let at_midnight = cleans(&[piece(20, 24), piece(24, 28)], &[], at(22));
+        assert_eq!((at_midnight[0].start, at_midnight[0].end), (at(20), at(22)));
     }
 
     #[test]
@@ -139,7 +142,7 @@ mod tests {
             end: at(27),
             kind: Phase::CleanInPlace,
         };
-        let list = cleans(&[piece(20, 28)], &[recorded]);
+        let list = cleans(&[piece(20, 28)], &[recorded], at(100));
         assert_eq!(list.len(), 1);
         assert_eq!(list[0].origin, Origin::Recorded("c1".to_owned()));
         assert_eq!(list[0].end, at(28));

@@ -5,7 +5,7 @@ use crate::plant::Limits;
 
 use super::Site;
 use super::assess::Assessment;
-use super::cleans::Clean;
+use super::cleans::{self, PhaseRow, RecordedClean};
 use super::forecast::Dates;
 use super::hours::Hour;
 use super::limits::{self, Hold, Holds, LimitKind};
@@ -14,6 +14,8 @@ use super::runs::{Baseline, Run};
 
 /// A start of cycle speaks for the train this long.
 const FRESH_US: i64 = DAY_US;
+/// Filtration that shows a train to be back.
+const BACK_US: i64 = 15 * MINUTE_US;
 
 /// Loss of permeability now.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -105,10 +107,12 @@ fn index(kind: LimitKind) -> usize {
 pub struct Rows<'a> {
     /// The last assessment before the day of the moment.
     pub assessment: Option<&'a Assessment>,
-    /// Hours since that assessment, and those of the day before it, in order of time.
+    /// Hours of the last two days at least, in order of time.
     pub hours: &'a [Hour],
-    /// The train's cleans, in order of time.
-    pub cleans: &'a [Clean],
+    /// Phases of clean in place of the last weeks, in order of time.
+    pub pieces: &'a [PhaseRow],
+    /// Recorded cleans of the last weeks.
+    pub recorded: &'a [RecordedClean],
     /// The train's runs, in order of time.
     pub runs: &'a [Run],
 }
@@ -117,10 +121,17 @@ pub struct Rows<'a> {
 pub fn standing(site: &Site, rows: &Rows, as_of: Instant) -> Standing {
     let assessed = rows.assessment.map(|a| a.as_of);
     let since = assessed.unwrap_or(Instant::from_micros(i64::MIN));
-    // A train is back once filtration has been seen again for a quarter of an hour.
-    let back = as_of.plus(-15 * MINUTE_US);
-    let in_clean = rows.cleans.iter().find(|c| c.start < as_of && c.end > back).map(|c| c.start);
-    let returned = rows.cleans.iter().rev().find(|c| c.end <= back && c.end > since).map(|c| c.end);
+    let cleans = cleans::cleans(rows.pieces, rows.recorded, as_of);
+    // A train is back once it has filtered again; between two steps of a clean it only rinses.
+    let back = |end: Instant| {
+        end.plus(BACK_US) <= as_of
+            && rows
+                .hours
+                .iter()
+                .any(|h| h.end > end && h.end <= as_of && h.filtration_s * 1e6 >= BACK_US as f64)
+    };
+    let in_clean = cleans.iter().find(|c| c.end >= since && !back(c.end)).map(|c| c.start);
+    let returned = cleans.iter().rev().find(|c| c.end >= since && back(c.end)).map(|c| c.end);
     let run_start = returned.or(rows.assessment.and_then(|a| a.run_start));
     let baseline = rows
         .assessment
@@ -143,7 +154,7 @@ pub fn standing(site: &Site, rows: &Rows, as_of: Instant) -> Standing {
     let loss = baseline.and_then(|b| recent().find_map(|h| loss_of(h, &b)));
     let end_tmp_pa = recent().find_map(|h| h.end_tmp_max_pa.map(|p| (p, h.start)));
     let (dates, no_dates) = dates(rows, returned, in_clean, baseline, &site.train.limits);
-    let past: Vec<&Run> = rows.runs.iter().filter(|r| r.start <= as_of).collect();
+    let past: Vec<&Run> = rows.runs.iter().filter(|r| r.start < since).collect();
     Standing {
         train: site.train.id.clone(),
         as_of,
