@@ -4,3 +4,4 @@ pub mod analysis;
 pub mod base;
 pub mod plant;
 pub mod science;
+pub mod sim;
