@@ -35,6 +35,20 @@ pub enum GrowthFrom {
     EarlierRuns,
 }
 
+impl GrowthFrom {
+    /// The code used in the store.
+    pub const fn code(self) -> &'static str {
+        match self {
+            Self::OwnTrend => "own_trend",
+            Self::EarlierRuns => "earlier_runs",
+        }
+    }
+    /// The one of a code.
+    pub fn from_code(code: &str) -> Option<Self> {
+        [Self::OwnTrend, Self::EarlierRuns].into_iter().find(|g| g.code() == code)
+    }
+}
+
 /// What could be said of a train at the end of a plant day. Keyed by train and day.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Assessment {
