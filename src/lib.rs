@@ -1,4 +1,5 @@
 //! washbell
 pub mod base;
+pub mod ingest;
 pub mod plant;
 pub mod science;
