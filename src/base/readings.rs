@@ -58,6 +58,7 @@ impl Column {
         self.words.get(at as usize).map_or("", String::as_str)
     }
     /// Adds a value at the end.
+    #[inline]
     pub fn push(&mut self, time: Instant, value: CellValue) {
         self.times.push(time);
         self.values.push(value);

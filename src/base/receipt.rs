@@ -56,7 +56,8 @@ pub enum Outcome {
 /// One thing that was not taken, and why.
 #[derive(Clone, Debug, PartialEq, Eq, Serialize, Deserialize)]
 pub struct Rejection {
-    /// Line of the file, the header being line 1; 0 for readings posted as JSON.
+    /// Line of the file, the header being line 1; for readings posted as JSON, the
+    /// position in the list, from 1.
     pub line: u64,
     /// Column name or tag; empty where the whole row was rejected.
     pub column: String,
