@@ -2,3 +2,4 @@
 pub mod base;
 pub mod plant;
 pub mod science;
+pub mod store;
