@@ -6,3 +6,4 @@ pub mod ingest;
 pub mod plant;
 pub mod science;
 pub mod sim;
+pub mod store;

@@ -17,7 +17,8 @@ pub(in crate::store) const OF_DAY: &str = "
 pub(in crate::store) const CLEAR: &str = "
     DELETE FROM cycle WHERE plant = ?1 AND train = ?2 AND start_us >= ?3 - 172800000000
         AND start_us < ?4 AND decided_us >= ?3 AND decided_us < ?4";
-const PUT: &str = "INSERT OR REPLACE INTO cycle (plant, train, start_us, end_us, decided_us, volume_m,
+const PUT: &str =
+    "INSERT OR REPLACE INTO cycle (plant, train, start_us, end_us, decided_us, volume_m,
     flux_m_s, temperature_degc, start_resistance_1_m, start_half_width_1_m, end_resistance_1_m,
     end_tmp_pa, taken_off_before_1_m, preceded_by, followed_by, left_out) ";
 

@@ -16,7 +16,8 @@ pub(in crate::store) const STARTS: &str = "
     SELECT DISTINCT start_us FROM day WHERE plant = ?1 AND start_us >= ?2 ORDER BY start_us";
 pub(in crate::store) const CLEAR: &str =
     "DELETE FROM day WHERE plant = ?1 AND train = ?2 AND start_us >= ?3 AND start_us < ?4";
-pub(in crate::store) const PUT: &str = "INSERT INTO day (plant, train, start_us, end_us, resistance_1_m,
+pub(in crate::store) const PUT: &str =
+    "INSERT INTO day (plant, train, start_us, end_us, resistance_1_m,
     half_width_1_m, start_hours, coarse, steady_resistance_1_m, flux_m_s, temperature_degc,
     end_tmp_max_pa, end_tmp_pa, laid_down_1_m, taken_off_1_m, volume_m, filtration_s, coverage,
     cycles, cycles_left_out, quality, reasons)
