@@ -3,10 +3,23 @@
 //!
 //! Everything is in SI: Pa, m3/s, m2, m/s, m/(s.Pa); temperatures in degrees Celsius.
 
+mod chemistry;
+mod effective;
+mod mistake;
 mod model;
+mod not_yet;
+mod read;
+mod revision;
+#[cfg(test)]
+mod tests;
+mod words;
 
+pub use chemistry::{classes_by_name, conflicts, rinse_separates};
+pub use effective::{Setting, effective};
+pub use mistake::Mistake;
 pub use model::{
     Dated, Drive, Filtration, HoldLimit, IntegrityValues, Layout, Limits, Loop, MembraneLimits,
     MonthTemperature, Phase, Plant, PressureKind, Procedure, RepeatedHour, Role, Service, Signal,
     Source, Stamp, Step, StepClass, TimeColumn, TimeFormat, Train, Values, VerifiedRinse,
 };
+pub use read::{Reading, read};
