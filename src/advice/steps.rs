@@ -3,7 +3,7 @@
 
 use serde::{Deserialize, Serialize};
 
-use crate::plant::{Phase, Step, StepClass, Train};
+use crate::plant::{self, Phase, Step, StepClass, Train};
 
 /// Why a step is there. Worded for people in `answers`.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
@@ -11,6 +11,8 @@ use crate::plant::{Phase, Step, StepClass, Train};
 pub enum Why {
     /// It is the site's procedure.
     SiteProcedure,
+    /// It is the site's procedure, held to the membrane's limits where it goes beyond them.
+    HeldToMembraneLimits,
     /// Organic and biological fouling yields to it (common practice, no source).
     OrganicFouling,
     /// Iron, manganese, aluminium and calcium yield to it (common practice, no source).
@@ -69,11 +71,7 @@ pub enum Caution {
 /// Steps of a clean in place of a train.
 pub fn in_place(train: &Train) -> (Vec<AdvisedStep>, StepsFrom) {
     if let Some(own) = train.procedures.iter().find(|p| p.kind == Phase::CleanInPlace) {
-        let steps = own
-            .steps
-            .iter()
-            .map(|s| AdvisedStep { step: s.clone(), why: Why::SiteProcedure })
-            .collect();
+        let steps = own.steps.iter().map(|s| held_to_membrane(train, s)).collect();
         return (steps, StepsFrom::SiteProcedure);
     }
     let steps = [
@@ -87,6 +85,13 @@ pub fn in_place(train: &Train) -> (Vec<AdvisedStep>, StepsFrom) {
         .map(|(class, why)| AdvisedStep { step: class_only(class), why })
         .collect();
     (steps, StepsFrom::GeneralPractice)
+}
+
+fn held_to_membrane(train: &Train, step: &Step) -> AdvisedStep {
+    match train.membrane_limits.map(|l| plant::within(step, &l)) {
+        Some((step, true)) => AdvisedStep { step, why: Why::HeldToMembraneLimits },
+        _ => AdvisedStep { step: step.clone(), why: Why::SiteProcedure },
+    }
 }
 
 fn class_only(class: StepClass) -> Step {

@@ -131,8 +131,8 @@ pub fn assess(
         memory.days.drain(..drop);
     }
     let trend = trend::trend(&memory.days);
-    if let (Some(run), Some(t)) = (memory.runs.last_mut(), trend) {
-        run.slope_1_m_per_m = Some(t.slope_1_m_per_m);
+    if let Some(run) = memory.runs.last_mut() {
+        run.slope_1_m_per_m = trend.map(|t| t.slope_1_m_per_m);
     }
     let (growth, growth_from) = growth(memory, trend.as_ref());
     let temperature_degc = last_week(&memory.days, |d| d.temperature_degc);

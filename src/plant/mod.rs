@@ -5,6 +5,7 @@
 
 mod chemistry;
 mod effective;
+mod membrane;
 mod mistake;
 mod model;
 mod not_yet;
@@ -16,6 +17,7 @@ mod words;
 
 pub use chemistry::{classes_by_name, conflicts, rinse_separates};
 pub use effective::{Setting, effective};
+pub use membrane::{beyond, within};
 pub use mistake::Mistake;
 pub use model::{
     Dated, Drive, Filtration, HoldLimit, IntegrityValues, Layout, Limits, Loop, MembraneLimits,

@@ -11,8 +11,6 @@ const REFUSED: &[(&str, &str, &str)] = &[
     ("values", "mean", "exports of means are not worked by this version"),
     ("between", "hold", "exports of changes only are not worked by this version"),
     ("max_hold", "", "held values are not worked by this version"),
-    ("format", "serial", "time stamps in spreadsheet days are not read by this version"),
-    ("format", "unix", "time stamps in unix seconds are not read by this version"),
     ("like", "", "a format by example is not read by this version; write it as `format`"),
 ];
 

@@ -1,12 +1,13 @@
 //! Checks across sections: what refers to what, and what does not fit together.
 
 use super::super::mistake::Report;
-use super::procedure::{PlacedProcedure, strength_mg_l};
+use super::procedure::PlacedProcedure;
 use super::tags::Placed;
 use super::train::PlacedTrain;
 use crate::base::{TrainId, nearest};
+use crate::plant::membrane::beyond;
 use crate::plant::not_yet::STATE_IS_NEEDED;
-use crate::plant::{Drive, Filtration, MembraneLimits, Role, Step, StepClass};
+use crate::plant::{Drive, Filtration, MembraneLimits, Role};
 
 /// Checks trains against each other and in themselves, and gives every train the signals of the
 /// meters that serve it.
@@ -165,34 +166,10 @@ fn steps_within(
 ) {
     for (step, span) in placed.procedure.steps.iter().zip(&placed.step_spans) {
         for message in beyond(step, limits) {
-            let help = "the membrane's data sheet rules; correct the step or the limit";
-            report.mistake_help(span, format!("{message} of {train}"), help);
+            let help = "the membrane's data sheet rules: advice and work orders stop at its limit";
+            report.warn(span, format!("{message} of {train}"), Some(help.to_owned()));
         }
     }
-}
-
-fn beyond(step: &Step, limits: &MembraneLimits) -> Vec<String> {
-    let mut found = Vec::new();
-    if let (Some(ph), Some((low, high))) = (step.ph, limits.ph)
-        && (ph < low || ph > high)
-    {
-        found.push(format!("pH {ph} is outside the membrane's {low} to {high}"));
-    }
-    if let (Some(t), Some(max)) = (step.temperature_degc, limits.temperature_degc)
-        && t > max + 1e-9
-    {
-        let (t, max) = ((t * 10.0).round() / 10.0, (max * 10.0).round() / 10.0);
-        found.push(format!("{t} °C is above the membrane's {max} °C"));
-    }
-    let strength = step.concentration.as_deref().and_then(|c| strength_mg_l(c).ok());
-    if let (Some(c), Some(max)) = (strength, limits.free_chlorine_mg_l)
-        && step.class == StepClass::Hypochlorite
-        && c > max * (1.0 + 1e-9)
-    {
-        let c = c.round();
-        found.push(format!("{c} mg/L free chlorine is above the membrane's {max} mg/L"));
-    }
-    found
 }
 
 /// Notes the tags without which a train cannot be worked.

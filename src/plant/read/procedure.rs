@@ -164,7 +164,7 @@ fn strength(value: &Value<'_>) -> Option<String> {
 ///
 /// # Errors
 /// If the text is neither a share nor a concentration.
-pub(super) fn strength_mg_l(text: &str) -> Result<f64, QuantityError> {
+pub(in crate::plant) fn strength_mg_l(text: &str) -> Result<f64, QuantityError> {
     match parse_quantity(text, Dimension::Share) {
         Ok(share) => Ok(share.value_si * 1e6),
         Err(_) => parse_quantity(text, Dimension::Concentration).map(|c| c.value_si * 1e3),

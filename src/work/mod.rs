@@ -1,0 +1,307 @@
+//! Floor 9: load, decide, save. One road for a post, an import, late data and a rebuild: days
+//! whose facts changed are worked again in order, later stages follow from the first of them,
+//! and decisions are taken at every closed hour of data time that has not been decided yet.
+//!
+//! Everything is written through one [`crate::store::Changes`]: all of it or nothing.
+
+mod clock;
+mod decide;
+mod load;
+mod train;
+
+use std::collections::{BTreeMap, BTreeSet};
+
+use crate::analysis::{DERIVATION_VERSION, LOOKBACK_US, Readings, Viscosity};
+use crate::base::{Instant, SourceId, Span, Tag, TrainId};
+use crate::plant::Plant;
+use crate::store::{Changes, DirtyDay, Store, StoreError};
+
+pub use clock::{newest_by_train, stale_after_us};
+pub use load::{TrainState, train_state, train_states};
+
+use clock::Clock;
+use decide::Decisions;
+use train::TrainWork;
+
+/// Runs are written anew from this long before the first day that was worked again: a clean and
+/// its joined steps lie within.
+const RUNS_BACK_US: i64 = 40 * crate::base::DAY_US;
+
+/// What work is done for.
+#[derive(Clone, Copy, Debug)]
+pub struct Cause<'a> {
+    /// Service time.
+    pub now: Instant,
+    /// Delivery that brought it about.
+    pub receipt: Option<&'a str>,
+}
+
+/// What was done.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Worked {
+    /// From when each train's answers changed.
+    pub changed_from: BTreeMap<TrainId, Instant>,
+    /// Train-days worked from readings.
+    pub train_days: usize,
+}
+
+/// Called as days are done: (done, of).
+pub type Progress<'a> = &'a mut (dyn FnMut(usize, usize) + Send);
+
+/// Works whatever is to be worked, and takes the decisions that are due.
+///
+/// # Errors
+/// If the store refuses; nothing is changed then, and the work stays to be done.
+pub async fn catch_up(
+    store: &Store,
+    plant: &Plant,
+    cause: &Cause<'_>,
+    progress: Progress<'_>,
+) -> Result<Worked, StoreError> {
+    let dirty = store.dirty_days(&plant.id).await?;
+    let pending = store.pending_receipts(&plant.id).await?;
+    if dirty.is_empty() && pending.is_empty() {
+        return Ok(Worked::default());
+    }
+    let changes = store.begin_changes(&plant.id).await?;
+    let mut road = Road::new(store, plant, changes, &dirty, false).await?;
+    road.decisions = Some(Decisions::load(store, plant, cause).await?);
+    road.walk(progress).await?;
+    road.reconsider("late_data").await?;
+    road.finish(&dirty, &pending).await
+}
+
+/// Works every derived row again from the facts. Writes no history, unless the plant file
+/// changed: then what is open is looked at once, at the newest instant.
+///
+/// # Errors
+/// If the store refuses; the old rows stand then.
+pub async fn rebuild(
+    store: &Store,
+    plant: &Plant,
+    cause: &Cause<'_>,
+    progress: Progress<'_>,
+) -> Result<Worked, StoreError> {
+    let of_another_file = store
+        .derivation(&plant.id)
+        .await?
+        .is_some_and(|(_, revision)| revision != plant.revision);
+    let done = store.dirty_days(&plant.id).await?;
+    let pending = store.pending_receipts(&plant.id).await?;
+    let all = every_day(store, plant).await?;
+    let mut changes = store.begin_changes(&plant.id).await?;
+    changes.clear_derived().await?;
+    let mut road = Road::new(store, plant, changes, &all, true).await?;
+    road.walk(progress).await?;
+    if of_another_file {
+        road.decisions = Some(Decisions::load(store, plant, cause).await?);
+        road.everything_changed();
+        road.reconsider("plant_file_changed").await?;
+    }
+    road.finish(&done, &pending).await
+}
+
+/// Every plant day of every train from its first reading to its newest.
+async fn every_day(store: &Store, plant: &Plant) -> Result<Vec<DirtyDay>, StoreError> {
+    let mut out = Vec::new();
+    for train in &plant.trains {
+        let tags: Vec<(SourceId, Tag)> =
+            crate::analysis::tags_needed(train).into_iter().collect();
+        let Some(span) = store.readings_span(&plant.id, &tags).await? else { continue };
+        let mut day = plant.zone.day(span.from);
+        while day.from <= span.to {
+            out.push(DirtyDay { day_start: day.from, train: train.id.clone(), mark: 0 });
+            day = plant.zone.day(day.to);
+        }
+    }
+    out.sort();
+    Ok(out)
+}
+
+/// The walk over days.
+struct Road<'a> {
+    store: &'a Store,
+    plant: &'a Plant,
+    changes: Changes,
+    trains: Vec<TrainWork<'a>>,
+    /// Days to work from readings, by start, with their trains.
+    dirty: BTreeMap<Instant, BTreeSet<TrainId>>,
+    clock: Clock,
+    decisions: Option<Decisions<'a>>,
+    viscosity: Viscosity,
+    /// Stored rows are not looked at: everything is worked again.
+    afresh: bool,
+    worked: Worked,
+}
+
+impl<'a> Road<'a> {
+    async fn new(
+        store: &'a Store,
+        plant: &'a Plant,
+        changes: Changes,
+        dirty_days: &[DirtyDay],
+        afresh: bool,
+    ) -> Result<Self, StoreError> {
+        let mut dirty: BTreeMap<Instant, BTreeSet<TrainId>> = BTreeMap::new();
+        for d in dirty_days {
+            dirty.entry(d.day_start).or_default().insert(d.train.clone());
+        }
+        let newest = newest_by_train(store, plant).await?;
+        let clock = Clock::new(store, plant, &newest).await?;
+        let mut trains = Vec::with_capacity(plant.trains.len());
+        for train in &plant.trains {
+            let first = dirty_days.iter().filter(|d| d.train == train.id).map(|d| d.day_start).min();
+            let at = newest.get(&train.id).copied();
+            trains.push(TrainWork::load(store, plant, train, first, at, afresh).await?);
+        }
+        Ok(Self {
+            store,
+            plant,
+            changes,
+            trains,
+            dirty,
+            clock,
+            decisions: None,
+            viscosity: Viscosity::new(plant.temperature_law),
+            afresh,
+            worked: Worked::default(),
+        })
+    }
+
+    /// Days to walk: those to work from readings, and later ones that have rows.
+    async fn days(&self) -> Result<Vec<Span>, StoreError> {
+        let mut starts: BTreeSet<Instant> = self.dirty.keys().copied().collect();
+        let from = self.trains.iter().filter_map(|t| t.fold_from).min();
+        if let Some(from) = from.filter(|_| !self.afresh) {
+            starts.extend(self.store.day_starts(&self.plant.id, from).await?);
+        }
+        Ok(starts.into_iter().map(|s| self.plant.zone.day(s)).collect())
+    }
+
+    async fn walk(&mut self, progress: Progress<'_>) -> Result<(), StoreError> {
+        let days = self.days().await?;
+        for (done, day) in days.iter().enumerate() {
+            progress(done, days.len());
+            self.stages_1_and_2(*day).await?;
+            self.step_hours(*day).await?;
+            for train in &mut self.trains {
+                train.stage_3(self.plant, *day, &mut self.changes).await?;
+            }
+        }
+        progress(days.len(), days.len());
+        Ok(())
+    }
+
+    /// Readings to rows for the trains whose facts changed; stored rows for the others.
+    async fn stages_1_and_2(&mut self, day: Span) -> Result<(), StoreError> {
+        let changed = self.dirty.get(&day.from).cloned().unwrap_or_default();
+        let readings = self.readings(&changed, day).await?;
+        for train in &mut self.trains {
+            if changed.contains(&train.site.train.id) {
+                let rows = crate::analysis::work_day(
+                    self.plant,
+                    train.site.train,
+                    &readings,
+                    day,
+                    &mut self.viscosity,
+                );
+                self.worked.train_days += 1;
+                let first = train.take(self.store, day, rows, &mut self.changes).await?;
+                if let Some(first) = first {
+                    let slot = self
+                        .worked
+                        .changed_from
+                        .entry(train.site.train.id.clone())
+                        .or_insert(first);
+                    *slot = (*slot).min(first);
+                }
+            } else if train.fold_from.is_some_and(|f| f <= day.from) {
+                train.take_stored(self.store, day).await?;
+            }
+        }
+        Ok(())
+    }
+
+    async fn readings(
+        &self,
+        trains: &BTreeSet<TrainId>,
+        day: Span,
+    ) -> Result<Readings, StoreError> {
+        let tags: BTreeSet<(SourceId, Tag)> = self
+            .trains
+            .iter()
+            .filter(|t| trains.contains(&t.site.train.id))
+            .flat_map(|t| t.tags.iter().cloned())
+            .collect();
+        if tags.is_empty() {
+            return Ok(Readings::new());
+        }
+        let tags: Vec<(SourceId, Tag)> = tags.into_iter().collect();
+        let window = Span::new(day.from.plus(-LOOKBACK_US), day.to);
+        let columns = self.store.readings(&self.plant.id, &tags, window).await?;
+        Ok(tags.into_iter().zip(columns).collect())
+    }
+
+    /// Decides the hours of a day that are due.
+    async fn step_hours(&mut self, day: Span) -> Result<(), StoreError> {
+        let Some(decisions) = &mut self.decisions else { return Ok(()) };
+        while let Some(hour) = self.clock.next_due(self.plant, day) {
+            for train in &self.trains {
+                if let Some(standing) = train.standing(self.plant, hour) {
+                    decisions.decide(train, &standing, None, &mut self.changes).await?;
+                }
+            }
+            self.clock.step(hour);
+        }
+        Ok(())
+    }
+
+    /// Looks once more, at the newest instant decided, at trains whose decided hours changed.
+    async fn reconsider(&mut self, reason: &str) -> Result<(), StoreError> {
+        let (Some(decisions), Some(before), Some(at)) =
+            (&mut self.decisions, self.clock.stepped_before, self.clock.stepped)
+        else {
+            return Ok(());
+        };
+        for train in &self.trains {
+            let changed = self.worked.changed_from.get(&train.site.train.id);
+            if changed.is_some_and(|c| *c < before) {
+                if let Some(standing) = train.standing(self.plant, at) {
+                    decisions.decide(train, &standing, Some(reason), &mut self.changes).await?;
+                }
+            }
+        }
+        Ok(())
+    }
+
+    fn everything_changed(&mut self) {
+        let long_ago = Instant::from_micros(i64::MIN);
+        for train in &self.trains {
+            self.worked.changed_from.insert(train.site.train.id.clone(), long_ago);
+        }
+    }
+
+    async fn finish(
+        mut self,
+        dirty: &[DirtyDay],
+        pending: &[String],
+    ) -> Result<Worked, StoreError> {
+        for train in &self.trains {
+            if let Some(from) = train.fold_from {
+                let from = from.plus(-RUNS_BACK_US);
+                let id = &train.site.train.id;
+                self.changes.put_runs(id, from, &train.memory.runs).await?;
+            }
+        }
+        if let (Some(to), Some(_)) = (self.clock.stepped, &self.decisions) {
+            self.changes.set_stepped(to).await?;
+        }
+        self.changes.clear_dirty(dirty).await?;
+        for receipt in pending {
+            self.changes.set_analysed(receipt, &self.worked.changed_from).await?;
+        }
+        self.changes.set_derivation(DERIVATION_VERSION, &self.plant.revision).await?;
+        self.changes.commit().await?;
+        Ok(self.worked)
+    }
+}

@@ -1,0 +1,220 @@
+//! One train on the road: what it has shown so far, and its next day.
+
+use crate::analysis::{
+    self, Assessment, DAYS_KEPT, Day, DayRows, HOURS_KEPT_US, Memory, PhaseRow, RecordedClean,
+    Rows, Site, Standing,
+};
+use crate::base::{DAY_US, Instant, SourceId, Span, Tag};
+use crate::plant::{Phase, Plant, Train};
+use crate::store::{Changes, Store, StoreError};
+
+/// Pieces of cleans are kept at hand this long: longer than a clean and its rinses.
+pub const PIECES_BACK_US: i64 = 30 * DAY_US;
+/// Assessments kept at hand: decisions may lag behind by a few hours over a midnight.
+const ASSESSMENTS_KEPT: usize = 4;
+
+/// One train's state on the road.
+pub struct TrainWork<'a> {
+    /// The train.
+    pub site: Site<'a>,
+    /// Tags whose readings it needs.
+    pub tags: Vec<(SourceId, Tag)>,
+    /// What it has shown.
+    pub memory: Memory,
+    /// The first day of the walk that concerns it; `None` where nothing does.
+    pub fold_from: Option<Instant>,
+    assessments: Vec<Assessment>,
+    pieces: Vec<PhaseRow>,
+    recorded: Vec<RecordedClean>,
+    day: Option<Day>,
+    newest: Option<Instant>,
+    every_us: i64,
+}
+
+impl<'a> TrainWork<'a> {
+    /// Loads what the walk needs to know of the time before its first day: the first one that
+    /// changed, or the first that has not been assessed.
+    pub async fn load(
+        store: &Store,
+        plant: &'a Plant,
+        train: &'a Train,
+        changed: Option<Instant>,
+        newest: Option<Instant>,
+        afresh: bool,
+    ) -> Result<Self, StoreError> {
+        let mut out = Self {
+            site: Site::new(plant, train),
+            tags: analysis::tags_needed(train).into_iter().collect(),
+            memory: Memory::default(),
+            fold_from: changed,
+            assessments: Vec::new(),
+            pieces: Vec::new(),
+            recorded: recorded(store, plant, train).await?,
+            day: None,
+            newest,
+            every_us: analysis::every_us(plant, train),
+        };
+        if afresh {
+            return Ok(out);
+        }
+        let far = Instant::from_micros(i64::MAX);
+        let last = store.assessments_before(&plant.id, &train.id, far, 1).await?;
+        let next = last.first().map(|a| a.as_of);
+        out.fold_from = match (changed, next) {
+            (Some(c), Some(n)) => Some(c.min(n)),
+            (Some(c), None) => Some(c.min(first_day(store, plant, train).await?.unwrap_or(c))),
+            (None, n) => n.or(first_day(store, plant, train).await?),
+        };
+        if let Some(from) = out.fold_from {
+            out.remember(store, plant, from).await?;
+        }
+        Ok(out)
+    }
+
+    /// What stood at the beginning of the day that starts at `from`.
+    async fn remember(
+        &mut self,
+        store: &Store,
+        plant: &Plant,
+        from: Instant,
+    ) -> Result<(), StoreError> {
+        let (plant_id, train) = (plant.id.as_str(), &self.site.train.id);
+        let kept = ASSESSMENTS_KEPT as u32;
+        self.assessments = store.assessments_before(plant_id, train, from, kept).await?;
+        let back = Span::new(from.plus(-PIECES_BACK_US), from);
+        let kind = Some(Phase::CleanInPlace);
+        self.pieces = store.phases(plant_id, train, back, kind).await?;
+        let back = Span::new(from.plus(-HOURS_KEPT_US), from);
+        self.memory.hours = store.hours(plant_id, train, back, u32::MAX).await?;
+        let runs = store.runs(plant_id, train, from).await?;
+        self.memory.runs = runs.iter().map(|r| analysis::as_known(r, from)).collect();
+        if let Some(last) = self.assessments.last() {
+            self.memory.holds = last.holds;
+            self.memory.run_days = last.run_days;
+            if let Some(run) = self.memory.runs.last_mut() {
+                run.slope_1_m_per_m = last.trend.map(|t| t.slope_1_m_per_m);
+            }
+        }
+        let begin = self.memory.runs.last().map_or(Instant::from_micros(i64::MIN), |r| r.start);
+        let days = store
+            .days(plant_id, train, Span::new(begin, from), DAYS_KEPT as u32 + 10)
+            .await?;
+        let cleans = analysis::cleans(&self.pieces, &self.recorded, from);
+        self.memory.days =
+            days.into_iter().filter(|d| analysis::is_run_day(d, &cleans, None)).collect();
+        let extra = self.memory.days.len().saturating_sub(DAYS_KEPT);
+        self.memory.days.drain(..extra);
+        Ok(())
+    }
+
+    /// Takes the rows of a day that was worked from readings. Answers the first moment at which
+    /// they differ from the stored ones.
+    pub async fn take(
+        &mut self,
+        store: &Store,
+        day: Span,
+        rows: DayRows,
+        changes: &mut Changes,
+    ) -> Result<Option<Instant>, StoreError> {
+        let train = &self.site.train.id;
+        let before = changes.hours_of_day(train, day).await?;
+        let first = changes.put_day(train, day, &rows, &before).await?;
+        self.memory.hours.retain(|h| !day.contains(h.start));
+        self.memory.hours.extend(rows.hours);
+        self.pieces.retain(|p| !day.contains(p.start));
+        self.pieces.extend(rows.phases.into_iter().filter(|p| p.phase == Phase::CleanInPlace));
+        let keep = day.from.plus(-PIECES_BACK_US);
+        self.pieces.retain(|p| p.start >= keep);
+        self.day = rows.day;
+        let _ = store;
+        Ok(first)
+    }
+
+    /// Takes the stored rows of a day.
+    pub async fn take_stored(&mut self, store: &Store, plant: &str, day: Span) -> Result<(), StoreError> {
+        let train = &self.site.train.id;
+        self.memory.hours.extend(store.hours(plant, train, day, u32::MAX).await?);
+        self.pieces.extend(store.phases(plant, train, day, Some(Phase::CleanInPlace)).await?);
+        self.day = store.days(plant, train, day, 1).await?.pop();
+        Ok(())
+    }
+
+    /// Assesses the day if it is over.
+    pub async fn stage_3(
+        &mut self,
+        plant: &Plant,
+        day: Span,
+        changes: &mut Changes,
+    ) -> Result<(), StoreError> {
+        let over = self.newest.is_some_and(|n| n.plus(self.every_us) >= day.to);
+        let Some(row) = self.day.take().filter(|_| over) else { return Ok(()) };
+        let cleans = analysis::cleans(&self.pieces, &self.recorded, day.to);
+        let assessment = analysis::assess(plant, &self.site, &mut self.memory, &row, &cleans);
+        self.assessments.push(assessment);
+        let extra = self.assessments.len().saturating_sub(ASSESSMENTS_KEPT);
+        self.assessments.drain(..extra);
+        if let Some(a) = self.assessments.last() {
+            let standing = self.standing_on(Some(a), day.to);
+            let found = analysis::find(&self.site, &standing);
+            changes.put_assessment(a, &found).await?;
+        }
+        Ok(())
+    }
+
+    /// What stood at the end of an hour; `None` for a train that has shown nothing yet.
+    pub fn standing(&self, plant: &Plant, hour_end: Instant) -> Option<Standing> {
+        let day = plant.zone.day(hour_end.plus(-1));
+        let assessment = self.assessments.iter().rev().find(|a| a.as_of <= day.from);
+        if assessment.is_none() && self.memory.hours.iter().all(|h| h.end > hour_end) {
+            return None;
+        }
+        Some(self.standing_on(assessment, hour_end))
+    }
+
+    fn standing_on(&self, assessment: Option<&Assessment>, at: Instant) -> Standing {
+        let rows = Rows {
+            assessment,
+            hours: &self.memory.hours,
+            pieces: &self.pieces,
+            recorded: &self.recorded,
+            runs: &self.memory.runs,
+        };
+        analysis::standing(&self.site, &rows, at)
+    }
+}
+
+async fn first_day(
+    store: &Store,
+    plant: &Plant,
+    train: &Train,
+) -> Result<Option<Instant>, StoreError> {
+    let all = Span::new(Instant::from_micros(i64::MIN), Instant::from_micros(i64::MAX));
+    let first = store.hours(&plant.id, &train.id, all, 1).await?;
+    Ok(first.first().map(|h| plant.zone.day(h.start).from))
+}
+
+/// Recorded cleans of a train.
+pub async fn recorded(
+    store: &Store,
+    plant: &Plant,
+    train: &Train,
+) -> Result<Vec<RecordedClean>, StoreError> {
+    let filter = crate::store::CleaningFilter {
+        train: Some(train.id.clone()),
+        limit: u32::MAX,
+        ..Default::default()
+    };
+    let list = store.cleanings(&plant.id, &filter).await?;
+    let mut out: Vec<RecordedClean> = list
+        .into_iter()
+        .map(|c| RecordedClean {
+            id: c.id,
+            train: c.train,
+            start: c.start,
+            end: c.end,
+            kind: c.kind,
+        })
+        .collect();
+    out.sort_by_key(|c| (c.start, c.end));
+    Ok(out)
+}
