@@ -1,6 +1,7 @@
 //! One delivery going in: its readings, what they replaced, the days to work again and, last,
 //! the receipt. All of it or nothing.
 
+use std::borrow::Cow;
 use std::collections::{BTreeMap, BTreeSet};
 
 use sqlx::{Row as _, Sqlite, Transaction};
@@ -161,7 +162,7 @@ impl Intake {
     async fn stored_days(
         &mut self,
         delivered: &[(SourceId, Tag, Column)],
-        cut: &[BTreeMap<i64, Column>],
+        cut: &[BTreeMap<i64, Cow<'_, Column>>],
     ) -> Result<BTreeMap<(usize, i64), String>, StoreError> {
         let (mut keys, mut places) = (Vec::new(), Vec::new());
         for (place, ((source, tag, _), days)) in delivered.iter().zip(cut).enumerate() {
@@ -251,9 +252,14 @@ impl Intake {
 }
 
 /// The delivery cut into UTC days, each in the order of the delivery.
-fn by_day(delivered: &Column) -> BTreeMap<i64, Column> {
-    let mut days: BTreeMap<i64, Column> = BTreeMap::new();
+fn by_day(delivered: &Column) -> BTreeMap<i64, Cow<'_, Column>> {
     let (mut from, n) = (0, delivered.times.len().min(delivered.values.len()));
+    if let Some(first) = delivered.times.first().map(|t| utc_day(*t))
+        && delivered.times.iter().all(|t| utc_day(*t) == first)
+    {
+        return BTreeMap::from([(first, Cow::Borrowed(delivered))]);
+    }
+    let mut days: BTreeMap<i64, Column> = BTreeMap::new();
     while let Some(first) = delivered.times.get(from).filter(|_| from < n) {
         let day = utc_day(*first);
         let rest = delivered.times.get(from..n).unwrap_or(&[]);
@@ -265,5 +271,5 @@ fn by_day(delivered: &Column) -> BTreeMap<i64, Column> {
         column.values.extend_from_slice(delivered.values.get(from..to).unwrap_or(&[]));
         from = to;
     }
-    days
+    days.into_iter().map(|(day, column)| (day, Cow::Owned(column))).collect()
 }

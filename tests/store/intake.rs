@@ -1,4 +1,4 @@
-use std::time::Instant as Clock;
+use std::time::{Duration, Instant as Clock};
 
 use washbell::base::{CellValue, Counts, Instant, MINUTE_US, Span, Tag, TrainId};
 use washbell::store::{StoreError, StoredValue};
@@ -213,27 +213,31 @@ async fn what_no_chunk_can_hold_is_refused_with_its_tag() {
 async fn measure_a_plant_year() {
     let given = given().await;
     let (tags, year) = (48, 366);
-    let mut days: Vec<Vec<_>> = (0..tags)
+    let days: Vec<Vec<_>> = (0..tags)
         .map(|t| (0..year).map(|d| minutes(d * 1440, (d + 1) * 1440, t)).collect())
         .collect();
     let names: Vec<Tag> = (0..tags).map(|t| Tag::new(&format!("PT-{t}"))).collect();
     for round in ["new", "repeated"] {
         let receipt = receipt(round);
-        let started = Clock::now();
+        let mut spent = Duration::ZERO;
         let mut intake = given.store.begin_intake(PLANT).await.unwrap();
         let mut total = Counts::default();
         for day in 0..year as usize {
             let block: Vec<_> = names
                 .iter()
-                .zip(&mut days)
+                .zip(&days)
                 .map(|(name, columns)| (source(), name.clone(), columns[day].clone()))
                 .collect();
+            let started = Clock::now();
             for outcome in intake.merge(&block, &receipt.id).await.unwrap() {
                 total.add(&outcome.counts);
             }
+            spent += started.elapsed();
         }
+        let started = Clock::now();
         intake.commit(&receipt, "m1").await.unwrap();
-        println!("{round}: {:?} for {} readings", started.elapsed(), total.cells());
+        spent += started.elapsed();
+        println!("{round}: {spent:?} for {} readings", total.cells());
     }
     let bytes = given.store.bytes().await.unwrap();
     println!("{bytes} bytes, {:.2} a reading", bytes as f64 / (tags * year * 1440) as f64);
@@ -268,4 +272,5 @@ async fn measure_a_plant_year() {
     let started = Clock::now();
     given.store.newest_reading(PLANT, &source()).await.unwrap();
     println!("newest of a source: {:?}", started.elapsed());
+    crate::views::measure_a_day(&given).await;
 }
