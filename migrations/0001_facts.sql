@@ -167,29 +167,30 @@ BEGIN SELECT RAISE(ABORT, 'receipts are facts and are only added to'); END;
 CREATE VIEW reading AS
 SELECT
     plant, source, tag, day,
-    CASE WHEN step_us IS NULL
-        THEN start_us + tick_us * sum(dt) OVER so_far
-        ELSE start_us + step_us * place
-    END AS time_us,
+    coalesce(grid_us, first_us + sum(delta_us) OVER so_far) AS time_us,
     CASE type
         WHEN 'integer' THEN sum(step) OVER so_far * 1.0 / scale
         WHEN 'real' THEN written
     END AS value,
-    CASE
-        WHEN type = 'text' THEN content ->> ('$.words[' || substr(written, 2) || ']')
-        WHEN type = 'integer' AND scale IS NULL THEN content ->> ('$.words[' || written || ']')
-    END AS word,
+    word,
     CASE WHEN type = 'text' AND written LIKE 'b%' THEN 'bad' ELSE 'good' END AS quality
 FROM (
+    -- Whatever needs the text is taken out of it here: the windows above sort their rows, and
+    -- would carry the text of the whole day in each.
     SELECT
-        c.plant, c.source, c.tag, c.day, c.content,
-        c.content ->> '$.start' AS start_us,
-        c.content ->> '$.step' AS step_us,
-        c.content ->> '$.tick' AS tick_us,
+        c.plant, c.source, c.tag, c.day, c.first_us,
+        c.first_us + v.key * (c.content ->> '$.step') AS grid_us,
+        CASE WHEN c.content ->> '$.step' IS NULL
+            THEN (c.content ->> ('$.dt[' || v.key || ']')) * (c.content ->> '$.tick')
+        END AS delta_us,
         c.content ->> '$.scale' AS scale,
         v.key AS place, v.type AS type, v.value AS written,
-        c.content ->> ('$.dt[' || v.key || ']') AS dt,
-        CASE v.type WHEN 'integer' THEN v.value END AS step
+        CASE v.type WHEN 'integer' THEN v.value END AS step,
+        CASE
+            WHEN v.type = 'text' THEN c.content ->> ('$.words[' || substr(v.value, 2) || ']')
+            WHEN v.type = 'integer' AND c.content ->> '$.scale' IS NULL
+                THEN c.content ->> ('$.words[' || v.value || ']')
+        END AS word
     FROM reading_chunk AS c, json_each(c.content, '$.v') AS v
     WHERE v.type <> 'null'
 )

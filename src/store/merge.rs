@@ -39,9 +39,17 @@ pub fn merge(stored: Option<&Column>, delivered: &Column) -> Merged {
     merged.column.times.reserve(stored.len() + delivered.len());
     merged.column.values.reserve(stored.len() + delivered.len());
 
+    let ascending = delivered.times.windows(2).all(|w| matches!(w, [a, b] if a < b));
+    let after = match (stored.times.last(), delivered.times.first()) {
+        (Some(last), Some(first)) => last < first,
+        _ => true,
+    };
+    if ascending && after {
+        merged.append(stored, delivered, &places);
+        return merged;
+    }
     let rows = delivered.times.iter().zip(&delivered.values);
     let rows = rows.map(|(time, value)| (*time, placed(*value, &places)));
-    let ascending = delivered.times.windows(2).all(|w| matches!(w, [a, b] if a < b));
     let mut rest = Stored { column: stored, at: 0 };
     if ascending {
         rows.for_each(|(time, value)| merged.deliver(&mut rest, time, value));
@@ -85,6 +93,17 @@ impl Stored<'_> {
 }
 
 impl Merged {
+    /// What nearly every delivery is: new readings after the stored ones.
+    fn append(&mut self, stored: &Column, delivered: &Column, places: &[u32]) {
+        self.column.times.extend_from_slice(&stored.times);
+        self.column.values.extend_from_slice(&stored.values);
+        self.column.times.extend_from_slice(&delivered.times);
+        self.column.values.extend(delivered.values.iter().map(|v| placed(*v, places)));
+        self.counts.accepted = delivered.values.iter().filter(|v| v.is_good()).count() as u64;
+        if let (Some(first), Some(last)) = (delivered.times.first(), delivered.times.last()) {
+            self.changed = Some(Span::new(*first, last.plus(1)));
+        }
+    }
     fn deliver(&mut self, rest: &mut Stored<'_>, time: Instant, new: CellValue) {
         rest.copy_until(time, &mut self.column);
         let standing = match (self.column.times.last(), self.column.values.last_mut()) {

@@ -5,7 +5,7 @@ use sqlx::{Connection, Executor, SqlSafeStr};
 use super::*;
 
 /// Every statement of the store. The test below counts them against the source.
-const STATEMENTS: [&str; 37] = [
+const STATEMENTS: [&str; 38] = [
     SQLITE_VERSION,
     BEGIN_WRITE,
     acts::INSERT,
@@ -19,6 +19,7 @@ const STATEMENTS: [&str; 37] = [
     dirty::LIST,
     dirty::MARK,
     intake::PUT_DAY,
+    intake::PUT_DAYS,
     intake::STORED_DAYS,
     plant_files::BY_REVISION,
     plant_files::INSERT,

@@ -1,9 +1,9 @@
-use std::time::Instant as Clock;
+use std::time::{Duration, Instant as Clock};
 
 use washbell::base::{CellValue, Counts, Instant, MINUTE_US, Span, Tag, TrainId};
 use washbell::store::{StoreError, StoredValue};
 
-use crate::{PLANT, at, column, days, deliver, given, minutes, receipt, source, tag};
+use crate::{PLANT, at, column, days, deliver, given, merge, minutes, receipt, source, tag};
 use CellValue::{Bad, Number, Word};
 
 fn counts(accepted: u64, repeated: u64, revised: u64) -> Counts {
@@ -16,12 +16,11 @@ async fn readings_over_midnight_come_back_as_delivered() {
     let delivered = minutes(1430, 1450, 1);
     let receipt = receipt("a");
     let mut intake = given.store.begin_intake(PLANT).await.unwrap();
-    let (source, name) = tag("PT-101");
-    let outcome = intake.merge(&source, &name, &delivered, &receipt.id).await.unwrap();
+    let outcome = merge(&mut intake, "PT-101", &delivered, &receipt.id).await;
     assert_eq!(outcome.counts, counts(20, 0, 0));
     let end = |m| at(m).plus(1);
     assert_eq!(outcome.changed, [Span::new(at(1430), end(1439)), Span::new(at(1440), end(1449))]);
-    assert_eq!(intake.newest(&source).await.unwrap(), Some(at(1449)));
+    assert_eq!(intake.newest(&source()).await.unwrap(), Some(at(1449)));
     intake.commit(&receipt, "m1").await.unwrap();
 
     let span = Span::new(at(1435), at(1445));
@@ -39,9 +38,8 @@ async fn readings_over_midnight_come_back_as_delivered() {
 async fn what_is_not_committed_is_undone() {
     let given = given().await;
     let receipt = receipt("a");
-    let (source, name) = tag("PT-101");
     let mut intake = given.store.begin_intake(PLANT).await.unwrap();
-    intake.merge(&source, &name, &minutes(0, 10, 1), &receipt.id).await.unwrap();
+    merge(&mut intake, "PT-101", &minutes(0, 10, 1), &receipt.id).await;
     intake.mark_dirty(&[(TrainId::new("uf-1"), at(0))]).await.unwrap();
     drop(intake);
     let read = given.store.readings(PLANT, &[tag("PT-101")], days(0, 1)).await.unwrap();
@@ -67,10 +65,10 @@ async fn the_same_again_changes_nothing_and_another_value_is_kept_beside_the_old
     let receipt = receipt("b");
     let (source, name) = tag("XS-1");
     let mut intake = given.store.begin_intake(PLANT).await.unwrap();
-    let outcome = intake.merge(&source, &name, &later, &receipt.id).await.unwrap();
+    let outcome = merge(&mut intake, "XS-1", &later, &receipt.id).await;
     assert_eq!(outcome.counts, counts(1, 1, 2));
     assert_eq!(outcome.changed, [Span::new(at(1), at(3).plus(1))]);
-    let again = intake.merge(&source, &name, &later, &receipt.id).await.unwrap();
+    let again = merge(&mut intake, "XS-1", &later, &receipt.id).await;
     assert_eq!((again.counts, again.changed.len()), (counts(0, 4, 0), 0));
     intake.commit(&receipt, "m1").await.unwrap();
 
@@ -99,7 +97,6 @@ async fn one_intake_sees_its_own_earlier_and_later_days() {
     let given = given().await;
     deliver(&given.store, "PT-1", &minutes(5 * 1440, 5 * 1440 + 10, 1)).await;
     let receipt = receipt("b");
-    let (source, name) = tag("PT-1");
     let mut intake = given.store.begin_intake(PLANT).await.unwrap();
     for (from, to, want) in [
         (0, 100, counts(100, 0, 0)),
@@ -111,13 +108,39 @@ async fn one_intake_sees_its_own_earlier_and_later_days() {
         (7 * 1440, 7 * 1440 + 20, counts(0, 20, 0)),
         (9 * 1440, 9 * 1440 + 20, counts(0, 20, 0)),
     ] {
-        let outcome = intake.merge(&source, &name, &minutes(from, to, 1), &receipt.id).await;
-        assert_eq!(outcome.unwrap().counts, want, "{from}..{to}");
+        let outcome = merge(&mut intake, "PT-1", &minutes(from, to, 1), &receipt.id).await;
+        assert_eq!(outcome.counts, want, "{from}..{to}");
     }
     intake.commit(&receipt, "m1").await.unwrap();
     let read = given.store.readings(PLANT, &[tag("PT-1")], days(0, 30)).await.unwrap();
     assert_eq!(read[0].len(), 3010 + 20 * 3);
     assert!(read[0].times.windows(2).all(|w| w[0] < w[1]));
+}
+
+#[tokio::test]
+async fn many_tags_at_once_and_one_twice_are_merged_as_one_by_one() {
+    let given = given().await;
+    deliver(&given.store, "PT-7", &minutes(1400, 1500, 7)).await;
+    let receipt = receipt("b");
+    let mut block: Vec<_> =
+        (0..20).map(|t| (source(), Tag::new(&format!("PT-{t}")), minutes(1430, 1450, t))).collect();
+    block.push((source(), Tag::new("PT-3"), minutes(1445, 1460, 3)));
+    block.push((source(), Tag::new("PT-30"), column(&[], &[])));
+    let mut intake = given.store.begin_intake(PLANT).await.unwrap();
+    let outcomes = intake.merge(&block, &receipt.id).await.unwrap();
+    intake.commit(&receipt, "m1").await.unwrap();
+    let told: Vec<_> = outcomes.iter().map(|o| (o.counts.accepted, o.counts.repeated)).collect();
+    let mut want = vec![(20, 0); 20];
+    want[7] = (0, 20);
+    want.extend([(10, 5), (0, 0)]);
+    assert_eq!(told, want);
+    let tags: Vec<_> = (0..20).map(|t| tag(&format!("PT-{t}"))).collect();
+    let read = given.store.readings(PLANT, &tags, days(0, 2)).await.unwrap();
+    for (t, read) in read.iter().enumerate() {
+        let (from, to) =
+            if t == 7 { (1400, 1500) } else { (1430, if t == 3 { 1460 } else { 1450 }) };
+        assert_eq!(read.values, minutes(from, to, t as i64).values, "PT-{t}");
+    }
 }
 
 #[tokio::test]
@@ -178,7 +201,8 @@ async fn what_no_chunk_can_hold_is_refused_with_its_tag() {
     let given = given().await;
     let (source, name) = tag("PT-1");
     let mut intake = given.store.begin_intake(PLANT).await.unwrap();
-    let refused = intake.merge(&source, &name, &column(&[(0, Number(f64::NAN))], &[]), "r").await;
+    let nan = column(&[(0, Number(f64::NAN))], &[]);
+    let refused = intake.merge(&[(source, name, nan)], "r").await;
     assert!(matches!(refused, Err(StoreError::Chunk { tag, .. }) if tag == "PT-1"));
 }
 
@@ -195,17 +219,25 @@ async fn measure_a_plant_year() {
     let names: Vec<Tag> = (0..tags).map(|t| Tag::new(&format!("PT-{t}"))).collect();
     for round in ["new", "repeated"] {
         let receipt = receipt(round);
-        let started = Clock::now();
+        let mut spent = Duration::ZERO;
         let mut intake = given.store.begin_intake(PLANT).await.unwrap();
         let mut total = Counts::default();
         for day in 0..year as usize {
-            for (name, columns) in names.iter().zip(&days) {
-                let outcome = intake.merge(&source(), name, &columns[day], &receipt.id).await;
-                total.add(&outcome.unwrap().counts);
+            let block: Vec<_> = names
+                .iter()
+                .zip(&days)
+                .map(|(name, columns)| (source(), name.clone(), columns[day].clone()))
+                .collect();
+            let started = Clock::now();
+            for outcome in intake.merge(&block, &receipt.id).await.unwrap() {
+                total.add(&outcome.counts);
             }
+            spent += started.elapsed();
         }
+        let started = Clock::now();
         intake.commit(&receipt, "m1").await.unwrap();
-        println!("{round}: {:?} for {} readings", started.elapsed(), total.cells());
+        spent += started.elapsed();
+        println!("{round}: {spent:?} for {} readings", total.cells());
     }
     let bytes = given.store.bytes().await.unwrap();
     println!("{bytes} bytes, {:.2} a reading", bytes as f64 / (tags * year * 1440) as f64);
@@ -213,13 +245,14 @@ async fn measure_a_plant_year() {
     let mut posts = Vec::new();
     for hour in 0..100 {
         let from = year * 1440 + hour * 60;
-        let columns: Vec<_> = (0..tags).map(|t| minutes(from, from + 60, t)).collect();
+        let block: Vec<_> = (0..tags)
+            .zip(&names)
+            .map(|(t, name)| (source(), name.clone(), minutes(from, from + 60, t)))
+            .collect();
         let receipt = receipt(&format!("post {hour}"));
         let started = Clock::now();
         let mut intake = given.store.begin_intake(PLANT).await.unwrap();
-        for (name, column) in names.iter().zip(&columns) {
-            intake.merge(&source(), name, column, &receipt.id).await.unwrap();
-        }
+        intake.merge(&block, &receipt.id).await.unwrap();
         intake.commit(&receipt, "m1").await.unwrap();
         posts.push(started.elapsed());
     }
@@ -239,4 +272,5 @@ async fn measure_a_plant_year() {
     let started = Clock::now();
     given.store.newest_reading(PLANT, &source()).await.unwrap();
     println!("newest of a source: {:?}", started.elapsed());
+    crate::views::measure_a_day(&given).await;
 }

@@ -11,7 +11,7 @@ use tempfile::TempDir;
 use washbell::base::{
     CellValue, Column, Counts, DAY_US, Instant, MINUTE_US, Outcome, Receipt, SourceId, Span, Tag,
 };
-use washbell::store::{Store, new_id};
+use washbell::store::{Intake, MergeOutcome, Store, new_id};
 
 pub const PLANT: &str = "harrow-fen";
 /// 2026-03-02T00:00:00Z.
@@ -93,8 +93,20 @@ pub fn receipt(digest: &str) -> Receipt {
 pub async fn deliver(store: &Store, name: &str, column: &Column) -> String {
     let receipt = receipt(&new_id());
     let mut intake = store.begin_intake(PLANT).await.unwrap();
-    let (source, tag) = tag(name);
-    intake.merge(&source, &tag, column, &receipt.id).await.unwrap();
+    merge(&mut intake, name, column, &receipt.id).await;
     intake.commit(&receipt, "m1").await.unwrap();
     receipt.id
+}
+
+/// Merges one column.
+pub async fn merge(
+    intake: &mut Intake,
+    name: &str,
+    column: &Column,
+    receipt: &str,
+) -> MergeOutcome {
+    let (source, tag) = tag(name);
+    let mut outcomes = intake.merge(&[(source, tag, column.clone())], receipt).await.unwrap();
+    assert_eq!(outcomes.len(), 1);
+    outcomes.remove(0)
 }

@@ -81,6 +81,13 @@ async fn beside_the_daemon_nothing_is_written() {
     let refused = beside.mark_dirty(PLANT, &[(TrainId::new("uf-1"), at(0))]).await;
     assert!(matches!(refused, Err(StoreError::ReadOnly)));
     assert!(matches!(beside.check(at(0)).await, Err(StoreError::ReadOnly)));
+    beside.close().await;
+    let path = given.store.path().to_owned();
+    deliver(&given.store, "PT-1", &minutes(0, 10, 1)).await;
+    given.store.close().await;
+    let alone = Store::open_beside(&path).await.unwrap();
+    let read = alone.readings(PLANT, &[tag("PT-1")], days(0, 1)).await.unwrap();
+    assert_eq!(read[0].len(), 10, "the daemon is down, its database can still be read");
     let none = Store::open_beside(&given.folder.path().join("none.db")).await;
     assert!(matches!(none, Err(StoreError::ReadOnly)));
 }

@@ -2,7 +2,7 @@
 
 use sqlx::Row;
 use sqlx::sqlite::{SqliteConnectOptions, SqlitePool};
-use washbell::base::{CellValue, Column, SECOND_US};
+use washbell::base::{CellValue, Column, DAY_US, SECOND_US};
 
 use crate::{Given, PLANT, START_US, at, column, deliver, given, minutes};
 use CellValue::{Bad, Number, Word};
@@ -20,7 +20,7 @@ async fn check(given: &Given, tag: &str, want: &Column) {
     let rows = sqlx::query(OF_DAY)
         .bind(PLANT)
         .bind(tag)
-        .bind(START_US / washbell::base::DAY_US)
+        .bind(START_US / DAY_US)
         .fetch_all(&shell(given).await)
         .await
         .unwrap();
@@ -38,6 +38,17 @@ async fn check(given: &Given, tag: &str, want: &Column) {
         })
         .collect();
     assert_eq!(got, want, "{tag}");
+}
+
+/// Prints what a tag's day costs by the view.
+pub async fn measure_a_day(given: &Given) {
+    let shell = shell(given).await;
+    for (what, day) in [("first", START_US / DAY_US), ("second", START_US / DAY_US + 1)] {
+        let started = std::time::Instant::now();
+        let query = sqlx::query(OF_DAY).bind(PLANT).bind("PT-1").bind(day);
+        let n = query.fetch_all(&shell).await.unwrap().len();
+        println!("{what} day by the view: {n} readings in {:?}", started.elapsed());
+    }
 }
 
 #[tokio::test]
