@@ -7,3 +7,4 @@ pub mod plant;
 pub mod science;
 pub mod sim;
 pub mod store;
+pub mod work;

@@ -123,8 +123,7 @@ pub fn assess(
             limits::step(holds, hour, resistance, &site.train.limits);
         }
     }
-    let in_clean = cleans.iter().any(|c| Span::new(c.start, c.end).overlaps(span));
-    if !in_clean && run_start.is_none_or(|s| day.start >= s) {
+    if is_run_day(day, cleans, run_start) {
         memory.run_days += 1;
         memory.days.push(day.clone());
         let drop = memory.days.len().saturating_sub(DAYS_KEPT);
@@ -157,6 +156,13 @@ pub fn assess(
 /// A clean that reaches up to midnight goes on.
 fn ended_within(clean: &Clean, day: Span) -> bool {
     day.contains(clean.end)
+}
+
+/// Whether a day belongs whole to the run: it began after the return, and no clean touched it.
+pub fn is_run_day(day: &Day, cleans: &[Clean], run_start: Option<Instant>) -> bool {
+    let span = Span::new(day.start, day.end);
+    let in_clean = cleans.iter().any(|c| Span::new(c.start, c.end).overlaps(span));
+    !in_clean && run_start.is_none_or(|s| day.start >= s)
 }
 
 fn begin_run(site: &Site, memory: &mut Memory, clean: &Clean) {

@@ -30,10 +30,10 @@ use crate::base::{Instant, Span, TrainId};
 use crate::plant::{Phase, Plant, Train};
 use crate::science;
 
-pub use assess::{Assessment, DAYS_KEPT, GrowthFrom, HOURS_KEPT_US, Memory, assess};
+pub use assess::{Assessment, DAYS_KEPT, GrowthFrom, HOURS_KEPT_US, Memory, assess, is_run_day};
 pub use cleans::{Clean, Origin, PhaseRow, RecordedClean, cleans};
 pub use cycles::Cycle;
-pub use day_input::{Readings, Samples, samples, tags_needed};
+pub use day_input::{Readings, Samples, every_us, samples, tags_needed};
 pub use days::Day;
 pub use findings::{Evidence, Finding, FindingKind, Measure, find};
 pub use forecast::{Dates, Growth};

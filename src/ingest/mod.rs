@@ -5,6 +5,7 @@
 //! stored already; whether a cell is new, repeated or revised is for the store to say. Memory
 //! is bounded by the longest line and the rows of one repeated hour, whatever the file's size.
 
+mod accept;
 mod body;
 mod cells;
 mod form;
@@ -21,6 +22,7 @@ mod tests;
 
 use crate::base::{Column, Instant, MINUTE_US, Rejection, Tag};
 
+pub use accept::{AcceptError, Accepted, Delivery, accept_file, accept_readings, digest};
 pub use json::{PostedReading, PostedReadings, PostedValue, take_posted};
 pub use parser::Parser;
 pub use refusal::Refusal;

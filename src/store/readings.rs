@@ -33,6 +33,11 @@ pub(super) const NEWEST_OF_TAGS: &str = "
 pub(super) const NEWEST_OF_SOURCE: &str =
     "SELECT max(last_us) FROM reading_chunk WHERE plant = ?1 AND source = ?2";
 
+pub(super) const SPAN_OF_TAGS: &str = "
+    SELECT min(c.first_us), max(c.last_us)
+    FROM json_each(?2) AS k CROSS JOIN reading_chunk AS c
+    WHERE c.plant = ?1 AND c.source = k.value ->> 0 AND c.tag = k.value ->> 1";
+
 /// The UTC day of a moment, in days since 1970-01-01.
 pub(super) fn utc_day(at: Instant) -> i64 {
     at.micros().div_euclid(DAY_US)
@@ -176,5 +181,20 @@ impl Store {
             .fetch_all(&self.readers)
             .await?;
         Ok(rows.into_iter().map(|us| us.map(Instant::from_micros)).collect())
+    }
+
+    /// Times of the earliest and the newest reading of some tags.
+    pub async fn readings_span(
+        &self,
+        plant: &str,
+        tags: &[(SourceId, Tag)],
+    ) -> Result<Option<Span>, StoreError> {
+        let row: (Option<i64>, Option<i64>) = sqlx::query_as(SPAN_OF_TAGS)
+            .bind(plant)
+            .bind(keys(tags)?)
+            .fetch_one(&self.readers)
+            .await?;
+        let at = Instant::from_micros;
+        Ok(row.0.zip(row.1).map(|(first, last)| Span::new(at(first), at(last))))
     }
 }

@@ -83,9 +83,7 @@ pub async fn newest_by_train(
     keys.dedup();
     let newest = store.newest_readings(&plant.id, &keys).await?;
     let by_tag: BTreeMap<&(SourceId, Tag), Option<Instant>> = keys.iter().zip(newest).collect();
-    let of = |train: &Train| {
-        driving_tags(train).iter().filter_map(|k| *by_tag.get(k)?).max()
-    };
+    let of = |train: &Train| driving_tags(train).iter().filter_map(|k| *by_tag.get(k)?).max();
     Ok(plant.trains.iter().filter_map(|t| Some((t.id.clone(), of(t)?))).collect())
 }
 

@@ -8,6 +8,7 @@ mod clock;
 mod decide;
 mod load;
 mod train;
+mod wall;
 
 use std::collections::{BTreeMap, BTreeSet};
 
@@ -18,6 +19,7 @@ use crate::store::{Changes, DirtyDay, Store, StoreError};
 
 pub use clock::{newest_by_train, stale_after_us};
 pub use load::{TrainState, train_state, train_states};
+pub use wall::WallClock;
 
 use clock::Clock;
 use decide::Decisions;
@@ -82,10 +84,8 @@ pub async fn rebuild(
     cause: &Cause<'_>,
     progress: Progress<'_>,
 ) -> Result<Worked, StoreError> {
-    let of_another_file = store
-        .derivation(&plant.id)
-        .await?
-        .is_some_and(|(_, revision)| revision != plant.revision);
+    let of_another_file =
+        store.derivation(&plant.id).await?.is_some_and(|(_, revision)| revision != plant.revision);
     let done = store.dirty_days(&plant.id).await?;
     let pending = store.pending_receipts(&plant.id).await?;
     let all = every_day(store, plant).await?;
@@ -105,8 +105,7 @@ pub async fn rebuild(
 async fn every_day(store: &Store, plant: &Plant) -> Result<Vec<DirtyDay>, StoreError> {
     let mut out = Vec::new();
     for train in &plant.trains {
-        let tags: Vec<(SourceId, Tag)> =
-            crate::analysis::tags_needed(train).into_iter().collect();
+        let tags: Vec<(SourceId, Tag)> = crate::analysis::tags_needed(train).into_iter().collect();
         let Some(span) = store.readings_span(&plant.id, &tags).await? else { continue };
         let mut day = plant.zone.day(span.from);
         while day.from <= span.to {
@@ -142,15 +141,18 @@ impl<'a> Road<'a> {
         dirty_days: &[DirtyDay],
         afresh: bool,
     ) -> Result<Self, StoreError> {
+        let newest = newest_by_train(store, plant).await?;
+        // The day after a reading is marked with it; it may not have begun.
+        let begun = |d: &&DirtyDay| newest.get(&d.train).is_some_and(|n| d.day_start <= *n);
         let mut dirty: BTreeMap<Instant, BTreeSet<TrainId>> = BTreeMap::new();
-        for d in dirty_days {
+        for d in dirty_days.iter().filter(begun) {
             dirty.entry(d.day_start).or_default().insert(d.train.clone());
         }
-        let newest = newest_by_train(store, plant).await?;
         let clock = Clock::new(store, plant, &newest).await?;
         let mut trains = Vec::with_capacity(plant.trains.len());
         for train in &plant.trains {
-            let first = dirty_days.iter().filter(|d| d.train == train.id).map(|d| d.day_start).min();
+            let first =
+                dirty_days.iter().filter(|d| d.train == train.id).map(|d| d.day_start).min();
             let at = newest.get(&train.id).copied();
             trains.push(TrainWork::load(store, plant, train, first, at, afresh).await?);
         }
@@ -206,7 +208,7 @@ impl<'a> Road<'a> {
                     &mut self.viscosity,
                 );
                 self.worked.train_days += 1;
-                let first = train.take(self.store, day, rows, &mut self.changes).await?;
+                let first = train.take(day, rows, &mut self.changes).await?;
                 if let Some(first) = first {
                     let slot = self
                         .worked
@@ -216,7 +218,7 @@ impl<'a> Road<'a> {
                     *slot = (*slot).min(first);
                 }
             } else if train.fold_from.is_some_and(|f| f <= day.from) {
-                train.take_stored(self.store, day).await?;
+                train.take_stored(self.store, &self.plant.id, day).await?;
             }
         }
         Ok(())

@@ -96,9 +96,8 @@ impl<'a> TrainWork<'a> {
             }
         }
         let begin = self.memory.runs.last().map_or(Instant::from_micros(i64::MIN), |r| r.start);
-        let days = store
-            .days(plant_id, train, Span::new(begin, from), DAYS_KEPT as u32 + 10)
-            .await?;
+        let days =
+            store.days(plant_id, train, Span::new(begin, from), DAYS_KEPT as u32 + 10).await?;
         let cleans = analysis::cleans(&self.pieces, &self.recorded, from);
         self.memory.days =
             days.into_iter().filter(|d| analysis::is_run_day(d, &cleans, None)).collect();
@@ -111,14 +110,12 @@ impl<'a> TrainWork<'a> {
     /// they differ from the stored ones.
     pub async fn take(
         &mut self,
-        store: &Store,
         day: Span,
         rows: DayRows,
         changes: &mut Changes,
     ) -> Result<Option<Instant>, StoreError> {
         let train = &self.site.train.id;
-        let before = changes.hours_of_day(train, day).await?;
-        let first = changes.put_day(train, day, &rows, &before).await?;
+        let first = changes.put_day(train, day, &rows).await?;
         self.memory.hours.retain(|h| !day.contains(h.start));
         self.memory.hours.extend(rows.hours);
         self.pieces.retain(|p| !day.contains(p.start));
@@ -126,12 +123,16 @@ impl<'a> TrainWork<'a> {
         let keep = day.from.plus(-PIECES_BACK_US);
         self.pieces.retain(|p| p.start >= keep);
         self.day = rows.day;
-        let _ = store;
         Ok(first)
     }
 
     /// Takes the stored rows of a day.
-    pub async fn take_stored(&mut self, store: &Store, plant: &str, day: Span) -> Result<(), StoreError> {
+    pub async fn take_stored(
+        &mut self,
+        store: &Store,
+        plant: &str,
+        day: Span,
+    ) -> Result<(), StoreError> {
         let train = &self.site.train.id;
         self.memory.hours.extend(store.hours(plant, train, day, u32::MAX).await?);
         self.pieces.extend(store.phases(plant, train, day, Some(Phase::CleanInPlace)).await?);
@@ -159,6 +160,11 @@ impl<'a> TrainWork<'a> {
             changes.put_assessment(a, &found).await?;
         }
         Ok(())
+    }
+
+    /// The last assessment.
+    pub fn last_assessment(&self) -> Option<&Assessment> {
+        self.assessments.last()
     }
 
     /// What stood at the end of an hour; `None` for a train that has shown nothing yet.
@@ -210,8 +216,8 @@ pub async fn recorded(
         .map(|c| RecordedClean {
             id: c.id,
             train: c.train,
-            start: c.start,
-            end: c.end,
+            start: c.span.from,
+            end: c.span.to,
             kind: c.kind,
         })
         .collect();

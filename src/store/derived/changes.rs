@@ -71,14 +71,14 @@ impl Changes {
         train: &TrainId,
         day: Span,
         rows: &DayRows,
-        before: &[crate::analysis::Hour],
     ) -> Result<Option<Instant>, StoreError> {
+        let before = hours::of_day(&mut self.tx, &self.plant, train, day).await?;
         let had = if before.is_empty() {
             Vec::new()
         } else {
             cycles::of_day(&mut self.tx, &self.plant, train, day).await?
         };
-        let differs = first_difference(before, &rows.hours, |h| h.start)
+        let differs = first_difference(&before, &rows.hours, |h| h.start)
             .into_iter()
             .chain(first_difference(&had, &rows.cycles, |c| c.start.max(day.from)));
         let first = differs.min();

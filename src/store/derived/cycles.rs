@@ -17,7 +17,7 @@ pub(in crate::store) const OF_DAY: &str = "
 pub(in crate::store) const CLEAR: &str = "
     DELETE FROM cycle WHERE plant = ?1 AND train = ?2 AND start_us >= ?3 - 172800000000
         AND start_us < ?4 AND decided_us >= ?3 AND decided_us < ?4";
-const PUT: &str =
+const INTO: &str =
     "INSERT OR REPLACE INTO cycle (plant, train, start_us, end_us, decided_us, volume_m,
     flux_m_s, temperature_degc, start_resistance_1_m, start_half_width_1_m, end_resistance_1_m,
     end_tmp_pa, taken_off_before_1_m, preceded_by, followed_by, left_out) ";
@@ -68,7 +68,7 @@ pub(super) async fn put(
     cycles: &[Cycle],
 ) -> Result<(), StoreError> {
     for part in cycles.chunks(500) {
-        let mut query: QueryBuilder<Sqlite> = QueryBuilder::new(PUT);
+        let mut query: QueryBuilder<Sqlite> = QueryBuilder::new(INTO);
         query.push_values(part, |mut b, c| {
             b.push_bind(plant.to_owned())
                 .push_bind(c.train.as_str().to_owned())

@@ -12,7 +12,7 @@ pub(in crate::store) const OF_TRAIN: &str = "
     ORDER BY start_us LIMIT ?5";
 pub(in crate::store) const CLEAR: &str =
     "DELETE FROM hour WHERE plant = ?1 AND train = ?2 AND start_us >= ?3 AND start_us < ?4";
-const PUT: &str = "INSERT INTO hour (plant, train, start_us, end_us, resistance_1_m,
+const INTO: &str = "INSERT INTO hour (plant, train, start_us, end_us, resistance_1_m,
     resistance_min_1_m, resistance_max_1_m, flux_m_s, tmp_pa, temperature_degc,
     start_resistance_1_m, start_half_width_1_m, starts, end_tmp_max_pa, samples, expected,
     filtration_s, volume_m, mostly, quality, reasons) ";
@@ -76,7 +76,7 @@ pub(super) async fn put(
     hours: &[Hour],
 ) -> Result<(), StoreError> {
     for part in hours.chunks(500) {
-        let mut query: QueryBuilder<Sqlite> = QueryBuilder::new(PUT);
+        let mut query: QueryBuilder<Sqlite> = QueryBuilder::new(INTO);
         query.push_values(part, |mut b, h| {
             let s = h.steady.as_ref();
             b.push_bind(plant.to_owned())
@@ -104,6 +104,24 @@ pub(super) async fn put(
         query.build().execute(&mut *conn).await?;
     }
     Ok(())
+}
+
+/// Hours of a day, as the transaction sees them.
+pub(super) async fn of_day(
+    conn: &mut SqliteConnection,
+    plant: &str,
+    train: &TrainId,
+    day: Span,
+) -> Result<Vec<Hour>, StoreError> {
+    let rows: Vec<Row> = sqlx::query_as(OF_TRAIN)
+        .bind(plant)
+        .bind(train.as_str())
+        .bind(day.from.micros())
+        .bind(day.to.micros())
+        .bind(u32::MAX)
+        .fetch_all(conn)
+        .await?;
+    Ok(rows.into_iter().map(from_row).collect())
 }
 
 impl Store {

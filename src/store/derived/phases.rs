@@ -15,7 +15,7 @@ pub(in crate::store) const OF_TRAIN: &str = "
     ORDER BY start_us";
 pub(in crate::store) const CLEAR: &str =
     "DELETE FROM phase WHERE plant = ?1 AND train = ?2 AND start_us >= ?3 AND start_us < ?4";
-const PUT: &str = "INSERT INTO phase (plant, train, start_us, end_us, phase) ";
+const INTO: &str = "INSERT INTO phase (plant, train, start_us, end_us, phase) ";
 
 /// Adds rows that are not there.
 pub(super) async fn put(
@@ -24,7 +24,7 @@ pub(super) async fn put(
     rows: &[PhaseRow],
 ) -> Result<(), StoreError> {
     for part in rows.chunks(1000) {
-        let mut query: QueryBuilder<Sqlite> = QueryBuilder::new(PUT);
+        let mut query: QueryBuilder<Sqlite> = QueryBuilder::new(INTO);
         query.push_values(part, |mut b, r| {
             b.push_bind(plant.to_owned())
                 .push_bind(r.train.as_str().to_owned())
