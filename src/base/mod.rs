@@ -1,12 +1,14 @@
 //! Floor 1: ids, time, units, and what a door answers. Knows nothing of membranes.
 
 mod ids;
+mod person;
 mod readings;
 mod receipt;
 mod time;
 mod units;
 
 pub use ids::{SourceId, Tag, TrainId};
+pub use person::names_a_person;
 pub use readings::{CellValue, Column};
 pub use receipt::{Counts, Outcome, Receipt, Rejection};
 pub use time::{
