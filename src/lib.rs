@@ -1,5 +1,6 @@
 //! washbell
 pub mod advice;
+pub mod alarms;
 pub mod analysis;
 pub mod base;
 pub mod plant;
