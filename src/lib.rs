@@ -1,8 +1,10 @@
 //! washbell
 pub mod advice;
+pub mod alarms;
 pub mod analysis;
 pub mod base;
 pub mod ingest;
+pub mod orders;
 pub mod plant;
 pub mod science;
 pub mod sim;
