@@ -1,0 +1,17 @@
+//! Floor 7: what is said, and how. View structs and pure functions from domain to view, so that
+//! API, page, commands and deliveries say the same thing: units, rounding, offsets and wording
+//! are decided here and nowhere else.
+
+mod problem;
+mod reason;
+mod time;
+mod units;
+
+pub use problem::{Problem, ProblemError, ProblemKind};
+pub use reason::{
+    action_code_words, action_words, baseline_words, caution_words, clears_when_words,
+    closed_why_words, finding_words, no_dates_words, phase_code, phase_words, reason_words,
+    reasons_words, role_code, role_words, step_class_code, urgency_words, verdict_words, why_words,
+};
+pub use time::{PlantTime, day_words, duration_text, duration_words, moment_words};
+pub use units::{Shown, UnitCodes, UnitSystem, Units, ValueView, unit_maps};
