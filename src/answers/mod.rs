@@ -2,16 +2,27 @@
 //! API, page, commands and deliveries say the same thing: units, rounding, offsets and wording
 //! are decided here and nowhere else.
 
+mod plant_view;
 mod problem;
 mod reason;
+mod receipt_view;
+mod step_view;
 mod time;
 mod units;
 
+#[cfg(test)]
+mod fixture;
+
+pub use plant_view::{PlantView, ShortTrain, SourceView, plant_view};
 pub use problem::{Problem, ProblemError, ProblemKind};
 pub use reason::{
     action_code_words, action_words, baseline_words, caution_words, clears_when_words,
     closed_why_words, finding_words, no_dates_words, phase_code, phase_words, reason_words,
     reasons_words, role_code, role_words, step_class_code, urgency_words, verdict_words, why_words,
 };
+pub use receipt_view::{
+    ClockView, CountsView, ReceiptView, RejectionView, receipt_text, receipt_view,
+};
+pub use step_view::{StepView, VerifiedView, step_view};
 pub use time::{PlantTime, day_words, duration_text, duration_words, moment_words};
 pub use units::{Shown, UnitCodes, UnitSystem, Units, ValueView, unit_maps};
