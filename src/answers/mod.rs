@@ -2,6 +2,9 @@
 //! API, page, commands and deliveries say the same thing: units, rounding, offsets and wording
 //! are decided here and nowhere else.
 
+mod cycles_view;
+mod permeability_csv;
+mod permeability_view;
 mod plant_view;
 mod problem;
 mod reason;
@@ -13,6 +16,12 @@ mod units;
 #[cfg(test)]
 mod fixture;
 
+pub use cycles_view::{CycleView, CyclesView, cycles_view};
+pub use permeability_csv::permeability_csv;
+pub use permeability_view::{
+    PermeabilityPoint, PermeabilityView, SeriesStep, SeriesUnits, day_points, hour_points,
+    minute_points, permeability_view,
+};
 pub use plant_view::{PlantView, ShortTrain, SourceView, plant_view};
 pub use problem::{Problem, ProblemError, ProblemKind};
 pub use reason::{
