@@ -9,8 +9,11 @@ mod plant_view;
 mod problem;
 mod reason;
 mod receipt_view;
+mod recommendation_view;
+mod sentence;
 mod step_view;
 mod time;
+mod train_view;
 mod units;
 
 #[cfg(test)]
@@ -32,6 +35,14 @@ pub use reason::{
 pub use receipt_view::{
     ClockView, CountsView, ReceiptView, RejectionView, receipt_text, receipt_view,
 };
+pub use recommendation_view::{
+    ClosedView, DatesView, DecisionView, EvidenceView, RecommendationView, evidence_view,
+    recommendation_view,
+};
 pub use step_view::{StepView, VerifiedView, step_view};
 pub use time::{PlantTime, day_words, duration_text, duration_words, moment_words};
+pub use train_view::{
+    DistrustedView, LimitView, LimitsView, LossView, StandingView, TrainCase, TrainView,
+    clean_by_order, train_view,
+};
 pub use units::{Shown, UnitCodes, UnitSystem, Units, ValueView, unit_maps};
