@@ -2,7 +2,11 @@
 //! API, page, commands and deliveries say the same thing: units, rounding, offsets and wording
 //! are decided here and nowhere else.
 
+mod cleaning_view;
 mod cycles_view;
+mod fouling_parts;
+mod fouling_view;
+mod list;
 mod permeability_csv;
 mod permeability_view;
 mod plant_view;
@@ -19,7 +23,17 @@ mod units;
 #[cfg(test)]
 mod fixture;
 
+pub use cleaning_view::{
+    CleaningFigures, CleaningView, LevelView, RecordedCleaning, inferred_cleaning, inferred_id,
+    recorded_cleaning,
+};
 pub use cycles_view::{CycleView, CyclesView, cycles_view};
+pub use fouling_parts::{PartView, ResistancesView};
+pub use fouling_view::{
+    BaselineView, BaselinesView, ForecastDates, ForecastView, FoulingCase, FoulingView, TrendView,
+    fouling_view,
+};
+pub use list::Page;
 pub use permeability_csv::permeability_csv;
 pub use permeability_view::{
     PermeabilityPoint, PermeabilityView, SeriesStep, SeriesUnits, day_points, hour_points,
