@@ -2,6 +2,7 @@
 pub mod advice;
 pub mod alarms;
 pub mod analysis;
+pub mod answers;
 pub mod base;
 pub mod ingest;
 pub mod orders;
