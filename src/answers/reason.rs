@@ -80,6 +80,10 @@ pub const fn caution_words(caution: Caution) -> &'static str {
 pub const fn why_words(why: Why) -> &'static str {
     match why {
         Why::SiteProcedure => "It is a step of the site's own procedure.",
+        Why::HeldToMembraneLimits => {
+            "It is a step of the site's own procedure, held to the membrane's limits: the procedure \
+             goes beyond them and has to be corrected."
+        }
         Why::OrganicFouling => "Organic and biological fouling yields to it.",
         Why::MineralFouling => "Iron, manganese, aluminium and calcium yield to it.",
         Why::KeepsApart => "It keeps apart chemicals that must not meet.",

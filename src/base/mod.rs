@@ -2,8 +2,8 @@
 
 mod ids;
 mod nearest;
-mod quantity;
 mod person;
+mod quantity;
 mod readings;
 mod receipt;
 mod time;
@@ -12,8 +12,8 @@ mod units;
 
 pub use ids::{SourceId, Tag, TrainId};
 pub use nearest::nearest;
-pub use quantity::{Quantity, QuantityError, parse_quantity, unit_help};
 pub use person::names_a_person;
+pub use quantity::{Quantity, QuantityError, parse_quantity, unit_help};
 pub use readings::{CellValue, Column};
 pub use receipt::{Counts, Outcome, Receipt, Rejection};
 pub use time::{
