@@ -246,9 +246,20 @@ struct Told {
 }
 
 impl Told {
-    async fn load(store: &Store, plant: &Plant, train: &Train) -> Result<Self, StoreError> {
-        let filter =
-            CleaningFilter { train: Some(train.id.clone()), limit: u32::MAX, ..Default::default() };
+    /// Cleans from a year before `since` on: older ones speak through the runs they began.
+    async fn load(
+        store: &Store,
+        plant: &Plant,
+        train: &Train,
+        since: Option<Instant>,
+    ) -> Result<Self, StoreError> {
+        let far = Instant::from_micros(i64::MAX);
+        let filter = CleaningFilter {
+            train: Some(train.id.clone()),
+            span: since.map(|s| Span::new(s.plus(-TOLD_BACK_US), far)),
+            limit: u32::MAX,
+            ..Default::default()
+        };
         let mut list = store.cleanings(&plant.id, &filter).await?;
         list.sort_by_key(|c| (c.span.from, c.span.to));
         let mut last_chemical = None;
