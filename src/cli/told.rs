@@ -99,7 +99,7 @@ fn trains(plant: &Plant, states: &[TrainState], open: &[Recommendation]) -> Tabl
             state.now.as_ref().map_or_else(String::new, |n| phase_words(n.phase).to_owned()),
             loss.map_or_else(|| "not known".to_owned(), |l| format!("{:.0} %", l.share * 100.0)),
             limit_words(&plant.zone, held, dates),
-            first.and_then(|r| r.start_by).map_or_else(String::new, |t| short(&plant.zone, t)),
+            start_words(&plant.zone, standing, first),
             advice_words(first, standing.is_some_and(|s| s.no_dates.is_none())),
         ]);
     }
