@@ -7,6 +7,7 @@ use std::process::ExitCode;
 use std::time::Instant as Stopwatch;
 
 use anyhow::{Context, anyhow};
+use tokio::net::TcpListener;
 
 use super::{EX_DATAERR, EX_USAGE, Failure};
 use crate::base::{DAY_US, HOUR_US, Instant, Span};
@@ -14,7 +15,7 @@ use crate::ingest::{Delivery, accept_file, digest};
 use crate::plant::Plant;
 use crate::sim::{self, Recipe, Simulation};
 use crate::store::{Cleaning, Store, new_id};
-use crate::work::{self, Cause, WallClock};
+use crate::work::{self, Cause, WallClock, Worker};
 
 /// The seed of the demo's plant.
 const SEED: u64 = 7;
@@ -41,9 +42,11 @@ pub async fn run(args: Args) -> Result<ExitCode, Failure> {
     let (end, clock) = times(args.end.as_deref())?;
     let dir = folder(args.dir.as_deref())?;
     let recipe = sim::demo(SEED, end);
-    let listen = args.listen.as_deref().unwrap_or(LISTEN);
+    let listener = if args.once { None } else { Some(listen(args.listen.as_deref()).await?) };
+    let bound = listener.as_ref().and_then(|l| l.local_addr().ok());
+    let listen = bound.map_or_else(|| LISTEN.to_owned(), |a| a.to_string());
     let file = dir.join("plant.toml");
-    fs::write(&file, sim::plant_toml(&recipe, listen, "washbell.db"))
+    fs::write(&file, sim::plant_toml(&recipe, &listen, "washbell.db"))
         .context("cannot write the plant file")?;
     let plant = super::read_plant(&file)?.plant;
     let store = Store::open(&plant.service.database).await?;
@@ -62,12 +65,27 @@ pub async fn run(args: Args) -> Result<ExitCode, Failure> {
         watch.elapsed().as_secs_f64()
     );
     print!("{}", super::told::told(&store, &plant, clock).await?);
-    if args.once {
+    let Some(listener) = listener else {
         store.close().await;
         return Ok(ExitCode::SUCCESS);
+    };
+    println!(
+        "\nServing on http://{listen}/. Post the next hour with\n\n  curl --data-binary @{} 'http://{listen}/v1/exports?file=next-hour.csv'\n",
+        dir.join("next-hour.csv").display()
+    );
+    super::logs::begin();
+    super::serve::until_stopped(Worker::new(store, plant, clock), listener, &file).await
+}
+
+/// Where it was asked for; else the usual port, or a free one where that is taken.
+async fn listen(asked: Option<&str>) -> Result<TcpListener, Failure> {
+    match asked {
+        Some(address) => super::serve::listen(address).await,
+        None => match super::serve::listen(LISTEN).await {
+            Ok(listener) => Ok(listener),
+            Err(_) => super::serve::listen("127.0.0.1:0").await,
+        },
     }
-    let _ = file;
-    Ok(ExitCode::SUCCESS)
 }
 
 fn times(end: Option<&str>) -> Result<(Instant, WallClock), Failure> {

@@ -7,6 +7,7 @@ mod import;
 mod logs;
 mod rebuild;
 mod run;
+mod serve;
 mod told;
 
 use std::path::{Path, PathBuf};
@@ -43,6 +44,8 @@ enum Command {
     Demo(demo::Args),
     /// All mistakes of the plant file at once; with files, what an import would take
     Check(check::Args),
+    /// The daemon
+    Serve(serve::Args),
     /// Bulk load with progress and a receipt a file
     Import(import::Args),
     /// Recompute every derived row
@@ -120,6 +123,7 @@ pub fn main() -> ExitCode {
         match cli.command {
             Command::Demo(args) => demo::run(args).await,
             Command::Check(args) => check::run(&args),
+            Command::Serve(args) => serve::run(&args).await,
             Command::Import(args) => import::run(&args).await,
             Command::Rebuild(args) => rebuild::run(&args).await,
             Command::Backup(args) => backup::run(&args).await,

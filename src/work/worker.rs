@@ -2,11 +2,12 @@
 //! once a minute. One works at a time.
 
 use std::collections::BTreeSet;
+use std::sync::atomic::{AtomicBool, Ordering};
 use std::sync::{Arc, PoisonError, RwLock};
 
 use tokio::sync::Mutex;
 
-use super::{Cause, WallClock, Worked, catch_up};
+use super::{Cause, WallClock, Worked, catch_up, rebuild};
 use crate::plant::Plant;
 use crate::store::{Store, StoreError};
 
@@ -17,13 +18,14 @@ pub struct Worker {
     clock: WallClock,
     plant: Arc<RwLock<Arc<Plant>>>,
     one: Arc<Mutex<()>>,
+    rebuilding: Arc<AtomicBool>,
 }
 
 impl Worker {
     /// A worker.
     pub fn new(store: Store, plant: Plant, clock: WallClock) -> Self {
         let plant = Arc::new(RwLock::new(Arc::new(plant)));
-        Self { store, clock, plant, one: Arc::default() }
+        Self { store, clock, plant, one: Arc::default(), rebuilding: Arc::default() }
     }
     /// The store it works on.
     pub const fn store(&self) -> &Store {
@@ -60,5 +62,23 @@ impl Worker {
         let _one = self.one.lock().await;
         let cause = Cause { now: self.clock.now(), receipt };
         catch_up(&self.store, &self.plant(), &cause, &mut |_, _| {}).await
+    }
+
+    /// Works every derived row again. Answers are the old ones until it is done.
+    ///
+    /// # Errors
+    /// If the store refuses; the old rows stand then.
+    pub async fn rebuild(&self) -> Result<Worked, StoreError> {
+        let _one = self.one.lock().await;
+        self.rebuilding.store(true, Ordering::Relaxed);
+        let cause = Cause { now: self.clock.now(), receipt: None };
+        let done = rebuild(&self.store, &self.plant(), &cause, &mut |_, _| {}).await;
+        self.rebuilding.store(false, Ordering::Relaxed);
+        done
+    }
+
+    /// Whether every row is being worked again: answers are the old ones.
+    pub fn is_rebuilding(&self) -> bool {
+        self.rebuilding.load(Ordering::Relaxed)
     }
 }
