@@ -28,7 +28,9 @@ pub fn propose(case: &Case) -> Option<Proposal> {
     let held = LimitKind::ALL
         .into_iter()
         .filter(|k| k.is_clean())
-        .find(|k| standing.hold(*k).held.is_some());
+        .filter(|k| standing.hold(*k).held.is_some())
+        .filter_map(|k| standing.hold(k).since)
+        .min();
     let dates = standing.binding().map(|(_, d)| d);
     let reach = if case.open.contains(&Action::CleanInPlace) { HOLD_ON } else { 1.0 };
     let horizon = now.plus((train.limits.planning_horizon_us as f64 * reach) as i64);
@@ -36,7 +38,8 @@ pub fn propose(case: &Case) -> Option<Proposal> {
     if held.is_none() && !near {
         return None;
     }
-    let clean_by = dates.unwrap_or_else(|| reached(now));
+    // Once it is past, the limit's date is known; it does not move with every look.
+    let clean_by = held.map(reached).or(dates)?;
     let start_by = clean_by.p10.map(|t| t.plus(-train.clean_duration_us - train.clean_notice_us));
     let (steps, steps_from) = steps::in_place(train);
     Some(Proposal {
@@ -51,8 +54,8 @@ pub fn propose(case: &Case) -> Option<Proposal> {
     })
 }
 
-fn reached(now: Instant) -> Dates {
-    Dates { p10: Some(now), p50: Some(now), p90: Some(now) }
+fn reached(since: Instant) -> Dates {
+    Dates { p10: Some(since), p50: Some(since), p90: Some(since) }
 }
 
 fn evidence(case: &Case) -> Vec<Evidence> {

@@ -5,7 +5,7 @@ use super::time::{dates_words, day_words, duration_words, moment_words};
 use super::train_view::{TrainCase, reading, shown};
 use super::units::Units;
 use crate::advice::{Action, Recommendation};
-use crate::analysis::{Dates, LimitKind, NoDates, Standing};
+use crate::analysis::{Dates, LimitKind, NoDates, Standing, Verdict};
 use crate::base::Instant;
 
 /// What is advised.
@@ -107,6 +107,7 @@ impl Told<'_> {
             )),
             None => sentences.push(self.main(advice)),
         }
+        sentences.extend(self.poor_clean());
         sentences.extend(self.why_no_advice(advice));
         let others = self.case.open.iter().filter(|r| r.is_open());
         for r in others.filter(|r| r.action != Action::CleanInPlace) {
@@ -117,6 +118,25 @@ impl Told<'_> {
             sentences.push(format!("In the last day hours could not be used: {reasons}"));
         }
         sentences.join(" ")
+    }
+
+    /// What the last clean was worth, where it was less than hoped.
+    fn poor_clean(&self) -> Option<String> {
+        let run = self.standing.clean.as_ref()?;
+        let what = match run.verdict {
+            Verdict::PartlyRestored => "restored it in part",
+            Verdict::NotRestored => "did not restore it",
+            Verdict::Doubtful => "is doubtful",
+            Verdict::Restored | Verdict::CannotTellYet => return None,
+        };
+        let best = self.units.share.text(run.restored_share()?);
+        let regained = run.regained_share().map_or_else(String::new, |share| {
+            format!(", {} of the loss regained", self.units.share.text(share))
+        });
+        Some(format!(
+            "The clean that ended {} {what}: {best} of the best permeability after a clean{regained}.",
+            self.day(run.start)
+        ))
     }
 
     /// Loss, limit and what follows from them.

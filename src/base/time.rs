@@ -267,6 +267,10 @@ impl Zone {
     pub fn short_words(&self, at: Instant) -> String {
         self.civil_at(at).strftime("%a %-d %b %H:%M").to_string()
     }
+    /// The local date in short, as `Mon 2 Mar`.
+    pub fn short_day(&self, at: Instant) -> String {
+        self.civil_at(at).strftime("%a %-d %b").to_string()
+    }
     /// The local month, 1 to 12.
     pub fn month(&self, at: Instant) -> i8 {
         self.civil_at(at).month()

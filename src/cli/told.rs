@@ -116,14 +116,15 @@ fn start_words(zone: &Zone, standing: Option<&Standing>, first: Option<&Recommen
 }
 
 fn limit_words(zone: &Zone, held: Option<Instant>, dates: Option<Dates>) -> String {
+    let day = |t: Instant| zone.short_day(t);
     if let Some(since) = held {
-        return format!("past since {}", short(zone, since));
+        return format!("past since {}", day(since));
     }
     let Some(Dates { p10: Some(early), p50, p90 }) = dates else { return "far".to_owned() };
-    let late = p90.map_or_else(|| "later".to_owned(), |t| short(zone, t));
+    let late = p90.map_or_else(|| "later".to_owned(), day);
     match p50 {
-        Some(likely) => format!("{} ({} to {late})", short(zone, likely), short(zone, early)),
-        None => format!("{} at the earliest", short(zone, early)),
+        Some(likely) => format!("{} ({} to {late})", day(likely), day(early)),
+        None => format!("{} at the earliest", day(early)),
     }
 }
 
