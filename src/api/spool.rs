@@ -17,7 +17,7 @@ use crate::store::new_id;
 /// A body on the disk. The file goes with it.
 #[derive(Debug)]
 pub struct Spool {
-    path: PathBuf,
+    temporary: Temporary,
     /// `sha256:` and the hex digest of the body as decoded.
     pub digest: String,
     /// File name that the body itself gives.
@@ -25,18 +25,13 @@ pub struct Spool {
 }
 
 /// Deletes the file, whatever becomes of the request.
+#[derive(Debug)]
 struct Temporary(PathBuf);
 
 impl Drop for Temporary {
     fn drop(&mut self) {
         // It may not exist yet; a file left behind is only in the way.
         let _ = std::fs::remove_file(&self.0);
-    }
-}
-
-impl Drop for Spool {
-    fn drop(&mut self) {
-        drop(Temporary(std::mem::take(&mut self.path)));
     }
 }
 
@@ -91,15 +86,12 @@ impl Spool {
         }
         out.flush().await.map_err(|e| no_room(&e))?;
         let hex: String = hash.finalize().iter().map(|b| format!("{b:02x}")).collect();
-        let path = temporary.0.clone();
-        // From here on the spool itself deletes it.
-        std::mem::forget(temporary);
-        Ok(Self { path, digest: format!("sha256:{hex}"), file })
+        Ok(Self { temporary, digest: format!("sha256:{hex}"), file })
     }
 
     /// Opens it for reading.
     pub fn open(&self) -> io::Result<std::fs::File> {
-        std::fs::File::open(&self.path)
+        std::fs::File::open(&self.temporary.0)
     }
 }
 

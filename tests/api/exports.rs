@@ -2,6 +2,8 @@ use reqwest::Method;
 use reqwest::multipart::{Form, Part};
 use serde_json::Value;
 
+use washbell::jobs;
+
 use crate::support::{Got, TestApp, export};
 
 fn sum(receipt: &Value) -> u64 {
@@ -169,4 +171,29 @@ fn gzip(bytes: &[u8]) -> Vec<u8> {
     out.extend((!crc).to_le_bytes());
     out.extend((bytes.len() as u32).to_le_bytes());
     out
+}
+
+#[tokio::test(flavor = "multi_thread")]
+async fn the_job_works_what_a_post_could_not() {
+    use washbell::ingest::{self, Delivery};
+    let app = TestApp::empty(6).await;
+    // Durable, and then the process ended.
+    let (plant, file) = (app.worker.plant(), export(6));
+    let received = app.worker.clock().now();
+    let delivery = Delivery { source: &plant.sources[0], file: "0600.csv", received };
+    let digest = ingest::digest(file.as_bytes()).unwrap();
+    ingest::accept_file(app.worker.store(), &plant, &delivery, &digest, file.as_bytes())
+        .await
+        .unwrap();
+    let newest = async || app.get_json("/v1/receipts").await["items"][0].clone();
+    assert_eq!(newest().await["analysis"], "pending");
+    assert_eq!(app.worker.days_waiting().await.unwrap(), 1);
+    let _jobs = jobs::start(&app.worker);
+    for _ in 0..300 {
+        if newest().await["analysis"] == "done" {
+            return;
+        }
+        tokio::time::sleep(std::time::Duration::from_millis(100)).await;
+    }
+    panic!("the job did nothing in half a minute");
 }
