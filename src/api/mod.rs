@@ -2,10 +2,20 @@
 //! of what there is. What every request has in common is in `http`: what may come in, how
 //! problems are said, pages of lists, entity tags.
 
+mod cycles;
+mod exports;
+mod fouling;
 mod health;
 mod http;
+mod index;
 mod openapi;
+mod permeability;
 mod plant;
+mod readings;
+mod receipts;
+mod sources;
+mod spool;
+mod trains;
 
 use std::sync::Arc;
 use std::time::Duration;
@@ -13,6 +23,7 @@ use std::time::Duration;
 use axum::Router;
 use axum::extract::DefaultBodyLimit;
 use axum::http::StatusCode;
+use axum::middleware::from_fn;
 use tower_http::catch_panic::CatchPanicLayer;
 use tower_http::decompression::RequestDecompressionLayer;
 use tower_http::limit::RequestBodyLimitLayer;
@@ -56,7 +67,15 @@ impl App {
 /// What is answered soon.
 fn operations() -> OpenApiRouter<App> {
     OpenApiRouter::new()
+        .routes(routes!(receipts::list))
+        .routes(routes!(receipts::one))
         .routes(routes!(plant::plant))
+        .routes(routes!(trains::list))
+        .routes(routes!(trains::one))
+        .routes(routes!(permeability::series))
+        .routes(routes!(cycles::list))
+        .routes(routes!(fouling::one))
+        .routes(routes!(index::index))
         .routes(routes!(health::live))
         .routes(routes!(health::ready))
         .routes(routes!(openapi::document))
@@ -65,6 +84,8 @@ fn operations() -> OpenApiRouter<App> {
 /// What takes files.
 fn uploads() -> OpenApiRouter<App> {
     OpenApiRouter::new()
+        .routes(routes!(exports::post, exports::put))
+        .routes(routes!(readings::post))
 }
 
 /// All routes, with what surrounds them.
@@ -76,14 +97,18 @@ pub fn router(app: App) -> Router {
     let (routes, described) = openapi::described(quick.merge(slow)).split_for_parts();
     let document = openapi::Document::of(described);
     // The last layer is the outermost.
-    routes
+    let inner = routes
         .fallback(http::nothing_here)
-        .layer(axum::middleware::from_fn(http::conditional))
+        .layer(from_fn(http::conditional))
         .layer(RequestDecompressionLayer::new())
         .layer(RequestBodyLimitLayer::new(EXPORT_BYTES_MAX))
         .layer(axum::Extension(document))
         .layer(CatchPanicLayer::custom(http::panicked))
-        .layer(axum::middleware::from_fn(http::problems))
-        .layer(axum::middleware::from_fn(http::observed))
-        .with_state(app)
+        .layer(from_fn(http::routed))
+        .with_state(app);
+    // Around the router as a whole: it says itself which methods a path takes.
+    Router::new()
+        .fallback_service(inner)
+        .layer(from_fn(http::problems))
+        .layer(from_fn(http::observed))
 }

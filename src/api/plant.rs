@@ -13,7 +13,15 @@ use crate::answers::{PlantView, UnitSystem, Units, plant_view};
 #[into_params(parameter_in = Query)]
 pub struct UnitsQuery {
     /// `si` (bar, °C, L/(m²·h)) or `us` (psi, °F, gfd).
+    #[param(inline)]
     units: Option<UnitSystem>,
+}
+
+impl UnitsQuery {
+    /// How quantities are shown.
+    pub fn units(&self) -> Units {
+        Units::new(self.units.unwrap_or_default())
+    }
 }
 
 /// The plant, as its file describes it
@@ -22,6 +30,5 @@ pub struct UnitsQuery {
     responses((status = 200, description = "The plant", body = PlantView))
 )]
 pub async fn plant(State(app): State<App>, ApiQuery(query): ApiQuery<UnitsQuery>) -> Answer {
-    let units = Units::new(query.units.unwrap_or_default());
-    json(&plant_view(&app.plant(), &units, app.clock.now()))
+    json(&plant_view(&app.plant(), &query.units(), app.clock.now()))
 }

@@ -119,3 +119,55 @@ pub fn panicked(cause: Box<dyn Any + Send + 'static>) -> Response {
     tracing::error!(panic = words, "a handler panicked");
     StatusCode::INTERNAL_SERVER_ERROR.into_response()
 }
+
+#[cfg(test)]
+mod tests {
+    use std::time::Duration;
+
+    use axum::Router;
+    use axum::body::{Body, to_bytes};
+    use axum::middleware::from_fn;
+    use axum::routing::get;
+    use tower::ServiceExt;
+    use tower_http::catch_panic::CatchPanicLayer;
+    use tower_http::timeout::TimeoutLayer;
+
+    use super::*;
+
+    async fn asked(path: &str) -> (StatusCode, String) {
+        let slow =
+            TimeoutLayer::with_status_code(StatusCode::REQUEST_TIMEOUT, Duration::from_millis(5));
+        let router = Router::new()
+            .route("/panic", get(async || -> &'static str { panic!("a secret") }))
+            .route("/slow", get(async || std::future::pending::<&'static str>().await))
+            .layer(slow)
+            .layer(CatchPanicLayer::custom(panicked))
+            .layer(from_fn(problems));
+        let request = Request::builder().uri(path).body(Body::empty()).unwrap();
+        let response = router.oneshot(request).await.unwrap();
+        assert_eq!(response.headers()[CONTENT_TYPE], PROBLEM_JSON);
+        let status = response.status();
+        let body = to_bytes(response.into_body(), usize::MAX).await.unwrap();
+        (status, String::from_utf8(body.to_vec()).unwrap())
+    }
+
+    #[tokio::test]
+    async fn a_panic_and_a_timeout_are_problems_too() {
+        let (status, body) = asked("/panic").await;
+        assert_eq!(status, StatusCode::INTERNAL_SERVER_ERROR);
+        assert!(body.contains("/problems/internal") && !body.contains("secret"), "{body}");
+        let (status, body) = asked("/slow").await;
+        assert_eq!(status, StatusCode::REQUEST_TIMEOUT);
+        assert!(body.contains("\"instance\":\"/slow\""), "{body}");
+    }
+
+    #[test]
+    fn pages_are_told_from_programs() {
+        for path in ["/v1", "/v1/trains", "/openapi.json", "/live"] {
+            assert!(!is_page(path), "{path}");
+        }
+        for path in ["/", "/v1x", "/trains/uf-1"] {
+            assert!(is_page(path), "{path}");
+        }
+    }
+}
