@@ -1,8 +1,7 @@
 //! Clean in place: the early date of a clean limit is within the planning horizon, or a clean
 //! limit has held.
 
-use crate::analysis::{Dates, Evidence, FindingKind, LimitKind, Verdict};
-use crate::base::Instant;
+use crate::analysis::{Evidence, FindingKind, LimitKind, Verdict};
 
 use super::{Action, Case, ClearsWhen, Proposal, steps, urgency};
 
@@ -28,23 +27,20 @@ pub fn propose(case: &Case) -> Option<Proposal> {
     let held = LimitKind::ALL
         .into_iter()
         .filter(|k| k.is_clean())
-        .filter(|k| standing.hold(*k).held.is_some())
-        .filter_map(|k| standing.hold(k).since)
-        .min();
+        .any(|k| standing.hold(k).held.is_some());
     let dates = standing.binding().map(|(_, d)| d);
     let reach = if case.open.contains(&Action::CleanInPlace) { HOLD_ON } else { 1.0 };
     let horizon = now.plus((train.limits.planning_horizon_us as f64 * reach) as i64);
     let near = dates.and_then(|d| d.p10).is_some_and(|p10| p10 <= horizon);
-    if held.is_none() && !near {
+    if !held && !near {
         return None;
     }
-    // Once it is past, the limit's date is known; it does not move with every look.
-    let clean_by = held.map(reached).or(dates)?;
+    let clean_by = dates?;
     let start_by = clean_by.p10.map(|t| t.plus(-train.clean_duration_us - train.clean_notice_us));
     let (steps, steps_from) = steps::in_place(train);
     Some(Proposal {
         action: Action::CleanInPlace,
-        urgency: urgency::of_start(case.plant, now, start_by, held.is_some()),
+        urgency: urgency::of_start(case.plant, now, start_by, held),
         clean_by: Some(clean_by),
         start_by,
         evidence: evidence(case),
@@ -52,10 +48,6 @@ pub fn propose(case: &Case) -> Option<Proposal> {
         steps,
         steps_from,
     })
-}
-
-fn reached(since: Instant) -> Dates {
-    Dates { p10: Some(since), p50: Some(since), p90: Some(since) }
 }
 
 fn evidence(case: &Case) -> Vec<Evidence> {

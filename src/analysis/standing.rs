@@ -153,7 +153,13 @@ pub fn standing(site: &Site, rows: &Rows, as_of: Instant) -> Standing {
     let recent = || hours.iter().rev().take_while(|h| h.end > fresh);
     let loss = baseline.and_then(|b| recent().find_map(|h| loss_of(h, &b)));
     let end_tmp_pa = recent().find_map(|h| h.end_tmp_max_pa.map(|p| (p, h.start)));
-    let (dates, no_dates) = dates(rows, returned, in_clean, baseline, &site.train.limits);
+    let (mut dates, no_dates) = dates(rows, returned, in_clean, baseline, &site.train.limits);
+    for (dates, hold) in dates.iter_mut().zip(&holds) {
+        // Once it counts, a limit has the date on which it was passed; no look moves it.
+        if hold.held.is_some() && in_clean.is_none() {
+            *dates = Some(Dates { p10: hold.since, p50: hold.since, p90: hold.since });
+        }
+    }
     let past: Vec<&Run> = rows.runs.iter().filter(|r| r.start < since).collect();
     Standing {
         train: site.train.id.clone(),

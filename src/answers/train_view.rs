@@ -46,7 +46,7 @@ pub struct StandingView {
     pub data_age: Option<String>,
     /// Whether that is beyond the age at which advice ends.
     pub stale: bool,
-    /// End of the data that all this stands on; null without any.
+    /// The newest reading, on which all this stands; null without any.
     pub as_of: Option<PlantTime>,
     /// The same in plain words.
     pub sentence: String,
@@ -187,7 +187,7 @@ fn standing_view(units: &Units, case: &TrainCase) -> StandingView {
         distrusted: distrusted(case),
         data_age: case.age_us().map(duration_text),
         stale: case.is_stale(),
-        as_of: PlantTime::optional(zone, case.standing.map(|s| s.as_of)),
+        as_of: PlantTime::optional(zone, case.newest()),
         sentence: sentence::sentence(units, case),
     }
 }
