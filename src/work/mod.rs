@@ -9,6 +9,7 @@ mod decide;
 mod load;
 mod train;
 mod wall;
+mod worker;
 
 use std::collections::{BTreeMap, BTreeSet};
 
@@ -20,6 +21,7 @@ use crate::store::{Changes, DirtyDay, Store, StoreError};
 pub use clock::{newest_by_train, stale_after_us};
 pub use load::{TrainState, train_state, train_states};
 pub use wall::WallClock;
+pub use worker::Worker;
 
 use clock::Clock;
 use decide::Decisions;

@@ -1,0 +1,23 @@
+//! What every request has in common.
+
+mod accept;
+mod body;
+mod conditional;
+mod failure;
+mod observed;
+mod paging;
+mod problems;
+mod query;
+mod respond;
+mod span;
+
+pub use accept::{prefers, prefers_html};
+pub use body::{ApiJson, EXPORT_BYTES_MAX, JSON_BYTES_MAX, media_type};
+pub use conditional::conditional;
+pub use failure::{Answer, Failure};
+pub use observed::observed;
+pub use paging::{Cursor, limit, next_address};
+pub use problems::{nothing_here, panicked, problems};
+pub use query::ApiQuery;
+pub use respond::{csv, json, json_of, linked, text};
+pub use span::{instant, span};

@@ -1,0 +1,89 @@
+//! Floor 12: JSON over HTTP. One file a resource; [`operations`] and [`uploads`] are the list
+//! of what there is. What every request has in common is in `http`: what may come in, how
+//! problems are said, pages of lists, entity tags.
+
+mod health;
+mod http;
+mod openapi;
+mod plant;
+
+use std::sync::Arc;
+use std::time::Duration;
+
+use axum::Router;
+use axum::extract::DefaultBodyLimit;
+use axum::http::StatusCode;
+use tower_http::catch_panic::CatchPanicLayer;
+use tower_http::decompression::RequestDecompressionLayer;
+use tower_http::limit::RequestBodyLimitLayer;
+use tower_http::timeout::TimeoutLayer;
+use utoipa_axum::router::OpenApiRouter;
+use utoipa_axum::routes;
+
+use crate::plant::Plant;
+use crate::store::Store;
+use crate::work::{WallClock, Worker};
+
+pub use http::{EXPORT_BYTES_MAX, JSON_BYTES_MAX};
+
+/// An answer may take this long.
+const ANSWER_WITHIN: Duration = Duration::from_secs(30);
+/// An upload may take this long: a year's file over a slow line, and its work.
+const UPLOAD_WITHIN: Duration = Duration::from_secs(600);
+
+/// What handlers work with. Clones share it.
+#[derive(Clone, Debug)]
+pub struct App {
+    /// The database.
+    pub store: Store,
+    /// The wall clock.
+    pub clock: WallClock,
+    /// Works what deliveries and recorded facts leave to be done, one at a time.
+    pub worker: Worker,
+}
+
+impl App {
+    /// An app on the store, plant and clock of a worker.
+    pub fn new(worker: Worker) -> Self {
+        Self { store: worker.store().clone(), clock: worker.clock(), worker }
+    }
+    /// The plant as its file describes it now. Take it once a request.
+    pub fn plant(&self) -> Arc<Plant> {
+        self.worker.plant()
+    }
+}
+
+/// What is answered soon.
+fn operations() -> OpenApiRouter<App> {
+    OpenApiRouter::new()
+        .routes(routes!(plant::plant))
+        .routes(routes!(health::live))
+        .routes(routes!(health::ready))
+        .routes(routes!(openapi::document))
+}
+
+/// What takes files.
+fn uploads() -> OpenApiRouter<App> {
+    OpenApiRouter::new()
+}
+
+/// All routes, with what surrounds them.
+pub fn router(app: App) -> Router {
+    let within = |limit| TimeoutLayer::with_status_code(StatusCode::REQUEST_TIMEOUT, limit);
+    let quick =
+        operations().layer(DefaultBodyLimit::max(JSON_BYTES_MAX)).layer(within(ANSWER_WITHIN));
+    let slow = uploads().layer(DefaultBodyLimit::disable()).layer(within(UPLOAD_WITHIN));
+    let (routes, described) = openapi::described(quick.merge(slow)).split_for_parts();
+    let document = openapi::Document::of(described);
+    // The last layer is the outermost.
+    routes
+        .fallback(http::nothing_here)
+        .layer(axum::middleware::from_fn(http::conditional))
+        .layer(RequestDecompressionLayer::new())
+        .layer(RequestBodyLimitLayer::new(EXPORT_BYTES_MAX))
+        .layer(axum::Extension(document))
+        .layer(CatchPanicLayer::custom(http::panicked))
+        .layer(axum::middleware::from_fn(http::problems))
+        .layer(axum::middleware::from_fn(http::observed))
+        .with_state(app)
+}

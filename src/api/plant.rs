@@ -1,0 +1,27 @@
+//! The plant.
+
+use axum::extract::State;
+use serde::Deserialize;
+use utoipa::IntoParams;
+
+use super::App;
+use super::http::{Answer, ApiQuery, json};
+use crate::answers::{PlantView, UnitSystem, Units, plant_view};
+
+/// In which units to answer.
+#[derive(Debug, Deserialize, IntoParams)]
+#[into_params(parameter_in = Query)]
+pub struct UnitsQuery {
+    /// `si` (bar, °C, L/(m²·h)) or `us` (psi, °F, gfd).
+    units: Option<UnitSystem>,
+}
+
+/// The plant, as its file describes it
+#[utoipa::path(
+    get, path = "/v1/plant", tag = "answers", operation_id = "getPlant", params(UnitsQuery),
+    responses((status = 200, description = "The plant", body = PlantView))
+)]
+pub async fn plant(State(app): State<App>, ApiQuery(query): ApiQuery<UnitsQuery>) -> Answer {
+    let units = Units::new(query.units.unwrap_or_default());
+    json(&plant_view(&app.plant(), &units, app.clock.now()))
+}
