@@ -263,6 +263,10 @@ impl Zone {
     pub fn day_words(&self, at: Instant) -> String {
         self.civil_at(at).strftime("%A %-d %B").to_string()
     }
+    /// The local date and time in short, as `Mon 2 Mar 06:00`.
+    pub fn short_words(&self, at: Instant) -> String {
+        self.civil_at(at).strftime("%a %-d %b %H:%M").to_string()
+    }
     /// The local month, 1 to 12.
     pub fn month(&self, at: Instant) -> i8 {
         self.civil_at(at).month()

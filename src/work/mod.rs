@@ -24,7 +24,7 @@ pub use wall::WallClock;
 pub use worker::Worker;
 
 use clock::Clock;
-use decide::Decisions;
+use decide::{Decisions, Instance};
 use train::TrainWork;
 
 /// Runs are written anew from this long before the first day that was worked again: a clean and
@@ -67,9 +67,10 @@ pub async fn catch_up(
     if dirty.is_empty() && pending.is_empty() {
         return Ok(Worked::default());
     }
-    let changes = store.begin_changes(&plant.id).await?;
+    let mut changes = store.begin_changes(&plant.id).await?;
+    let decisions = Decisions::load(store, plant, cause, &mut changes).await?;
     let mut road = Road::new(store, plant, changes, &dirty, false).await?;
-    road.decisions = Some(Decisions::load(store, plant, cause).await?);
+    road.decisions = Some(decisions);
     road.walk(progress).await?;
     road.reconsider("late_data").await?;
     road.finish(&dirty, &pending).await
@@ -96,7 +97,8 @@ pub async fn rebuild(
     let mut road = Road::new(store, plant, changes, &all, true).await?;
     road.walk(progress).await?;
     if of_another_file {
-        road.decisions = Some(Decisions::load(store, plant, cause).await?);
+        let decisions = Decisions::load(store, plant, cause, &mut road.changes).await?;
+        road.decisions = Some(decisions);
         road.everything_changed();
         road.reconsider("plant_file_changed").await?;
     }
@@ -252,7 +254,8 @@ impl<'a> Road<'a> {
         while let Some(hour) = self.clock.next_due(self.plant, day) {
             for train in &self.trains {
                 if let Some(standing) = train.standing(self.plant, hour) {
-                    decisions.decide(train, &standing, None, &mut self.changes).await?;
+                    let look = Instance { train, standing: &standing, reason: None };
+                    decisions.decide(&look, &mut self.changes).await?;
                 }
             }
             self.clock.step(hour);
@@ -271,7 +274,8 @@ impl<'a> Road<'a> {
             let changed = self.worked.changed_from.get(&train.site.train.id);
             if changed.is_some_and(|c| *c < before) {
                 if let Some(standing) = train.standing(self.plant, at) {
-                    decisions.decide(train, &standing, Some(reason), &mut self.changes).await?;
+                    let look = Instance { train, standing: &standing, reason: Some(reason) };
+                    decisions.decide(&look, &mut self.changes).await?;
                 }
             }
         }

@@ -1,17 +1,22 @@
 //! One train on the road: what it has shown so far, and its next day.
 
 use crate::analysis::{
-    self, Assessment, DAYS_KEPT, Day, DayRows, HOURS_KEPT_US, Memory, PhaseRow, RecordedClean,
-    Rows, Site, Standing,
+    self, Assessment, Clean, DAYS_KEPT, Day, DayRows, HOURS_KEPT_US, Memory, PhaseRow,
+    RecordedClean, Rows, Run, Site, Standing,
 };
-use crate::base::{DAY_US, Instant, SourceId, Span, Tag};
+use crate::base::{DAY_US, HOUR_US, Instant, SourceId, Span, Tag};
+use crate::orders::{Actuals, LastChemical, Named};
 use crate::plant::{Phase, Plant, Train};
-use crate::store::{Changes, Store, StoreError};
+use crate::store::{Changes, Cleaning, CleaningFilter, Store, StoreError};
 
 /// Pieces of cleans are kept at hand this long: longer than a clean and its rinses.
 pub const PIECES_BACK_US: i64 = 30 * DAY_US;
 /// Assessments kept at hand: decisions may lag behind by a few hours over a midnight.
 const ASSESSMENTS_KEPT: usize = 4;
+/// Recorded cleans are kept at hand this long.
+const TOLD_BACK_US: i64 = 400 * DAY_US;
+/// A clean that ended this long ago goes on no more.
+const ENDED_US: i64 = HOUR_US / 4;
 
 /// One train's state on the road.
 pub struct TrainWork<'a> {
@@ -26,6 +31,8 @@ pub struct TrainWork<'a> {
     assessments: Vec<Assessment>,
     pieces: Vec<PhaseRow>,
     recorded: Vec<RecordedClean>,
+    named: Vec<Named>,
+    last_chemical: Option<LastChemical>,
     day: Option<Day>,
     newest: Option<Instant>,
     every_us: i64,
@@ -42,6 +49,8 @@ impl<'a> TrainWork<'a> {
         newest: Option<Instant>,
         afresh: bool,
     ) -> Result<Self, StoreError> {
+        let since = if afresh { None } else { changed.into_iter().chain(newest).min() };
+        let told = Told::load(store, plant, train, since).await?;
         let mut out = Self {
             site: Site::new(plant, train),
             tags: analysis::tags_needed(train).into_iter().collect(),
@@ -49,7 +58,9 @@ impl<'a> TrainWork<'a> {
             fold_from: changed,
             assessments: Vec::new(),
             pieces: Vec::new(),
-            recorded: recorded(store, plant, train).await?,
+            recorded: told.recorded,
+            named: told.named,
+            last_chemical: told.last_chemical,
             day: None,
             newest,
             every_us: analysis::every_us(plant, train),
@@ -167,6 +178,34 @@ impl<'a> TrainWork<'a> {
         self.assessments.last()
     }
 
+    /// Cleans that had ended well before a moment.
+    pub fn ended_cleans(&self, at: Instant) -> Vec<Clean> {
+        let mut list = analysis::cleans(&self.pieces, &self.recorded, at);
+        list.retain(|c| c.end.plus(ENDED_US) <= at);
+        list
+    }
+
+    /// Runs as they were known at a moment.
+    pub fn runs_known(&self, at: Instant) -> Vec<Run> {
+        let begun = self.memory.runs.iter().filter(|r| r.start < at);
+        begun.map(|r| analysis::as_known(r, at)).collect()
+    }
+
+    /// Recorded cleans that name a work order.
+    pub fn named(&self) -> &[Named] {
+        &self.named
+    }
+
+    /// What the last recorded clean may have left in the train.
+    pub fn last_chemical(&self) -> Option<&LastChemical> {
+        self.last_chemical.as_ref()
+    }
+
+    /// What the train mostly did in the last hour before a moment.
+    pub fn phase_before(&self, at: Instant) -> Option<Phase> {
+        self.memory.hours.iter().rev().find(|h| h.end <= at).map(|h| h.mostly)
+    }
+
     /// What stood at the end of an hour; `None` for a train that has shown nothing yet.
     pub fn standing(&self, plant: &Plant, hour_end: Instant) -> Option<Standing> {
         let day = plant.zone.day(hour_end.plus(-1));
@@ -199,28 +238,64 @@ async fn first_day(
     Ok(first.first().map(|h| plant.zone.day(h.start).from))
 }
 
-/// Recorded cleans of a train.
-pub async fn recorded(
-    store: &Store,
-    plant: &Plant,
-    train: &Train,
-) -> Result<Vec<RecordedClean>, StoreError> {
-    let filter = crate::store::CleaningFilter {
-        train: Some(train.id.clone()),
-        limit: u32::MAX,
-        ..Default::default()
-    };
-    let list = store.cleanings(&plant.id, &filter).await?;
-    let mut out: Vec<RecordedClean> = list
-        .into_iter()
-        .map(|c| RecordedClean {
-            id: c.id,
-            train: c.train,
+/// What people recorded of a train's cleans.
+struct Told {
+    recorded: Vec<RecordedClean>,
+    named: Vec<Named>,
+    last_chemical: Option<LastChemical>,
+}
+
+impl Told {
+    /// Cleans from a year before `since` on: older ones speak through the runs they began.
+    async fn load(
+        store: &Store,
+        plant: &Plant,
+        train: &Train,
+        since: Option<Instant>,
+    ) -> Result<Self, StoreError> {
+        let far = Instant::from_micros(i64::MAX);
+        let filter = CleaningFilter {
+            train: Some(train.id.clone()),
+            span: since.map(|s| Span::new(s.plus(-TOLD_BACK_US), far)),
+            limit: u32::MAX,
+            ..Default::default()
+        };
+        let mut list = store.cleanings(&plant.id, &filter).await?;
+        list.sort_by_key(|c| (c.span.from, c.span.to));
+        let mut last_chemical = None;
+        for c in &list {
+            last_chemical = LastChemical::left_by(&c.steps, last_chemical.as_ref(), c.span.to);
+        }
+        Ok(Self {
+            recorded: list.iter().map(recorded).collect(),
+            named: list.iter().filter_map(named).collect(),
+            last_chemical,
+        })
+    }
+}
+
+fn recorded(c: &Cleaning) -> RecordedClean {
+    RecordedClean {
+        id: c.id.clone(),
+        train: c.train.clone(),
+        start: c.span.from,
+        end: c.span.to,
+        kind: c.kind,
+    }
+}
+
+fn named(c: &Cleaning) -> Option<Named> {
+    let digits = c.work_order.as_deref()?.trim_start_matches(|c: char| !c.is_ascii_digit());
+    Some(Named {
+        cleaning: c.id.clone(),
+        number: digits.parse().ok()?,
+        actuals: Actuals {
             start: c.span.from,
             end: c.span.to,
-            kind: c.kind,
-        })
-        .collect();
-    out.sort_by_key(|c| (c.start, c.end));
-    Ok(out)
+            steps: c.steps.clone(),
+            waste_m3: None,
+            staff_hours: None,
+            notes: None,
+        },
+    })
 }
