@@ -2,10 +2,20 @@
 //! of what there is. What every request has in common is in `http`: what may come in, how
 //! problems are said, pages of lists, entity tags.
 
+mod cycles;
+mod exports;
+mod fouling;
 mod health;
 mod http;
+mod index;
 mod openapi;
+mod permeability;
 mod plant;
+mod readings;
+mod receipts;
+mod sources;
+mod spool;
+mod trains;
 
 use std::sync::Arc;
 use std::time::Duration;
@@ -56,7 +66,15 @@ impl App {
 /// What is answered soon.
 fn operations() -> OpenApiRouter<App> {
     OpenApiRouter::new()
+        .routes(routes!(receipts::list))
+        .routes(routes!(receipts::one))
         .routes(routes!(plant::plant))
+        .routes(routes!(trains::list))
+        .routes(routes!(trains::one))
+        .routes(routes!(permeability::series))
+        .routes(routes!(cycles::list))
+        .routes(routes!(fouling::one))
+        .routes(routes!(index::index))
         .routes(routes!(health::live))
         .routes(routes!(health::ready))
         .routes(routes!(openapi::document))
@@ -65,6 +83,8 @@ fn operations() -> OpenApiRouter<App> {
 /// What takes files.
 fn uploads() -> OpenApiRouter<App> {
     OpenApiRouter::new()
+        .routes(routes!(exports::post, exports::put))
+        .routes(routes!(readings::post))
 }
 
 /// All routes, with what surrounds them.

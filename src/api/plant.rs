@@ -16,12 +16,18 @@ pub struct UnitsQuery {
     units: Option<UnitSystem>,
 }
 
+impl UnitsQuery {
+    /// How quantities are shown.
+    pub fn units(&self) -> Units {
+        Units::new(self.units.unwrap_or_default())
+    }
+}
+
 /// The plant, as its file describes it
 #[utoipa::path(
     get, path = "/v1/plant", tag = "answers", operation_id = "getPlant", params(UnitsQuery),
     responses((status = 200, description = "The plant", body = PlantView))
 )]
 pub async fn plant(State(app): State<App>, ApiQuery(query): ApiQuery<UnitsQuery>) -> Answer {
-    let units = Units::new(query.units.unwrap_or_default());
-    json(&plant_view(&app.plant(), &units, app.clock.now()))
+    json(&plant_view(&app.plant(), &query.units(), app.clock.now()))
 }

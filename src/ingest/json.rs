@@ -3,6 +3,7 @@
 use std::collections::BTreeMap;
 
 use serde::Deserialize;
+use utoipa::ToSchema;
 
 use super::cells::{Cell, CellReader, Kind, TOO_MANY_WORDS, WORDS_MAX};
 use super::layout::tags_of;
@@ -12,7 +13,7 @@ use crate::base::{CellValue, Column, Instant, SourceId, Tag};
 use crate::plant::{Layout, Plant, Source};
 
 /// The body of a post of readings.
-#[derive(Clone, Debug, PartialEq, Deserialize)]
+#[derive(Clone, Debug, PartialEq, Deserialize, ToSchema)]
 #[serde(deny_unknown_fields)]
 pub struct PostedReadings {
     /// Source of all readings that do not name their own.
@@ -22,12 +23,13 @@ pub struct PostedReadings {
 }
 
 /// One reading.
-#[derive(Clone, Debug, PartialEq, Deserialize)]
+#[derive(Clone, Debug, PartialEq, Deserialize, ToSchema)]
 #[serde(deny_unknown_fields)]
 pub struct PostedReading {
     /// Its source, where it is not that of the post.
     pub source: Option<String>,
     /// RFC 3339, with an offset.
+    #[schema(format = DateTime)]
     pub time: String,
     /// The tag, as the plant file names it.
     pub tag: String,
@@ -38,7 +40,7 @@ pub struct PostedReading {
 }
 
 /// A posted value.
-#[derive(Clone, Debug, PartialEq, Deserialize)]
+#[derive(Clone, Debug, PartialEq, Deserialize, ToSchema)]
 #[serde(untagged, expecting = "a value is a number, a text or null")]
 pub enum PostedValue {
     /// A number.

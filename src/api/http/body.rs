@@ -59,21 +59,30 @@ impl<S: Send + Sync, T: DeserializeOwned> FromRequest<S> for ApiJson<T> {
 async fn read_all(request: Request) -> Result<Bytes, Failure> {
     to_bytes(request.into_body(), JSON_BYTES_MAX).await.map_err(|error| {
         if is_too_long(&error) {
-            return ProblemKind::TooLarge
-                .problem(format!(
-                    "A body in JSON may hold {JSON_BYTES_MAX} bytes; send it in parts."
-                ))
-                .into();
+            let detail =
+                format!("A body in JSON may hold {JSON_BYTES_MAX} bytes; send it in parts.");
+            return ProblemKind::TooLarge.problem(detail).into();
         }
-        ProblemKind::BadRequest
-            .problem(format!("The body could not be read to its end: {error}. Send it again."))
-            .into()
+        unreadable_body(&error)
     })
 }
 
+/// What is said of a body that broke off, was longer than allowed, or could not be decoded.
+pub fn unreadable_body(error: &dyn std::error::Error) -> Failure {
+    if is_too_long(error) {
+        let detail = format!("A body may hold {EXPORT_BYTES_MAX} bytes; send it in parts.");
+        return ProblemKind::TooLarge.problem(detail).into();
+    }
+    let detail = format!(
+        "The body could not be read to its end: {}. Nothing was stored; send it again.",
+        super::chain(error)
+    );
+    ProblemKind::BadRequest.problem(detail).into()
+}
+
 /// Whether a body failed because it is longer than allowed.
-fn is_too_long(error: &axum::Error) -> bool {
-    let mut source: Option<&dyn std::error::Error> = Some(error);
+fn is_too_long(error: &dyn std::error::Error) -> bool {
+    let mut source = Some(error);
     while let Some(e) = source {
         if e.to_string().contains("length limit exceeded") {
             return true;

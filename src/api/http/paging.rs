@@ -18,6 +18,15 @@ pub struct Cursor {
 
 const CHECK: usize = 8;
 
+/// Items of a page where no number is asked for.
+pub const LIST_USUAL: u32 = 100;
+/// Items of a page at most.
+pub const LIST_MOST: u32 = 1_000;
+/// Points of a page of a series where no number is asked for.
+pub const SERIES_USUAL: u32 = 1_000;
+/// Points of a page of a series at most.
+pub const SERIES_MOST: u32 = 10_000;
+
 impl Cursor {
     /// The cursor text of a place in a list.
     pub fn text(list: &str, place: &str) -> String {

@@ -2,6 +2,7 @@
 
 use axum::extract::{FromRequestParts, Query};
 use axum::http::request::Parts;
+use serde::Deserialize;
 use serde::de::DeserializeOwned;
 use utoipa::IntoParams;
 
@@ -12,6 +13,10 @@ use crate::base::nearest;
 /// The parameters of a query. Their description is also the list of those there are.
 #[derive(Clone, Debug)]
 pub struct ApiQuery<T>(pub T);
+
+/// For addresses that take no parameter.
+#[derive(Clone, Copy, Debug, Deserialize, IntoParams)]
+pub struct NoQuery {}
 
 impl<S: Send + Sync, T: DeserializeOwned + IntoParams> FromRequestParts<S> for ApiQuery<T> {
     type Rejection = Failure;

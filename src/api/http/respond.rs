@@ -1,6 +1,6 @@
 //! How answers are written.
 
-use axum::http::header::{CONTENT_TYPE, LINK};
+use axum::http::header::{CONTENT_DISPOSITION, CONTENT_TYPE, LINK};
 use axum::http::{HeaderValue, StatusCode};
 use axum::response::{IntoResponse, Response};
 use serde::Serialize;
@@ -38,9 +38,15 @@ pub fn linked(mut response: Response, next: Option<&str>) -> Response {
     response
 }
 
-/// A table as CSV.
-pub fn csv(body: String) -> Response {
-    ([(CONTENT_TYPE, "text/csv; charset=utf-8; header=present")], body).into_response()
+/// A table as CSV, to be kept under that name.
+pub fn csv(file: &str, body: String) -> Response {
+    let plain = |c: &char| c.is_ascii_alphanumeric() || "-_.".contains(*c);
+    let file: String = file.chars().filter(plain).collect();
+    let headers = [
+        (CONTENT_TYPE, "text/csv; charset=utf-8; header=present".to_owned()),
+        (CONTENT_DISPOSITION, format!("attachment; filename=\"{file}\"")),
+    ];
+    (headers, body).into_response()
 }
 
 /// Plain text, for people.
