@@ -27,8 +27,13 @@ impl Desk<'_> {
     ///
     /// # Errors
     /// If there is none of that id, nobody is named, or the alarm is silent or over.
-    pub async fn acknowledge(&self, id: &str, by: &str) -> Result<Done<Alarm>, ActError> {
-        let word = Word { what: "acknowledge", by: by.trim(), reason: None };
+    pub async fn acknowledge(
+        &self,
+        id: &str,
+        by: &str,
+        reason: Option<&str>,
+    ) -> Result<Done<Alarm>, ActError> {
+        let word = Word { what: "acknowledge", by: by.trim(), reason: words(reason) };
         self.on_alarm(id, &word, |alarm| alarms::acknowledge(alarm, by, self.now)).await
     }
 

@@ -1,6 +1,6 @@
 //! What may still be in a train, and what met in it by the records of its cleanings.
 
-use super::{Desk, Kept as _, happened};
+use super::{Desk, happened};
 use crate::alarms::{self, Alarm, AlarmKind, Condition, Look, Scope};
 use crate::base::{DAY_US, Instant, Span, TrainId};
 use crate::orders::{LastChemical, conflicts};

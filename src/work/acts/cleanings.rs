@@ -149,20 +149,21 @@ impl Desk<'_> {
         new: &NewCleaning,
     ) -> Result<Done<Cleaning>, ActError> {
         let plant = self.plant.id.as_str();
-        if let Some(reference) = &new.reference {
-            if let Some(known) = self.store.cleaning_by_reference(plant, reference).await? {
-                if is_same(&known, new) {
-                    return Ok(Done::known(known));
-                }
-                let (reference, id) = (reference.clone(), known.id);
-                return Err(CleaningRefused::ReferenceTaken { reference, id }.into());
+        if let Some(reference) = &new.reference
+            && let Some(known) = self.store.cleaning_by_reference(plant, reference).await?
+        {
+            if is_same(&known, new) {
+                return Ok(Done::known(known));
             }
+            let (reference, id) = (reference.clone(), known.id);
+            return Err(CleaningRefused::ReferenceTaken { reference, id }.into());
         }
-        for other in self.cleanings(&new.train, Some(new.span)).await? {
-            if is_same(&other, new) {
-                return Ok(Done::known(other));
-            }
-            return Err(CleaningRefused::Overlaps { id: other.id, span: other.span }.into());
+        let others = self.cleanings(&new.train, Some(new.span)).await?;
+        if let Some(known) = others.iter().find(|c| is_same(c, new)) {
+            return Ok(Done::known(known.clone()));
+        }
+        if let Some(Cleaning { id, span, .. }) = others.into_iter().next() {
+            return Err(CleaningRefused::Overlaps { id, span }.into());
         }
         let cleaning = Cleaning {
             id: new_id(),

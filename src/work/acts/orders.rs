@@ -119,10 +119,10 @@ impl Desk<'_> {
         let make = |open: Option<i64>, number: i64, at: Instant| {
             orders::by_hand(train, asked.clone(), open, last.as_ref(), number, at)
         };
-        if let Some(open) = open {
-            if make(None, open.number, open.raised).is_ok_and(|same| same == *open) {
-                return Ok(Done::known(open.clone()));
-            }
+        if let Some(open) = open
+            && make(None, open.number, open.raised).is_ok_and(|same| same == *open)
+        {
+            return Ok(Done::known(open.clone()));
         }
         let number = changes.next_order_number().await?;
         let order = make(open.map(|o| o.number), number, self.now)?;
