@@ -29,6 +29,7 @@ pub struct CyclesQuery {
     /// Instead: a duration up to the newest data, such as P7D, which is usual.
     last: Option<String>,
     /// `si` or `us`.
+    #[param(inline)]
     units: Option<UnitSystem>,
     /// At most so many, up to 1,000; 100 if left out.
     #[param(minimum = 1, maximum = 1000)]

@@ -30,6 +30,7 @@ use std::time::Duration;
 use axum::Router;
 use axum::extract::DefaultBodyLimit;
 use axum::http::StatusCode;
+use axum::middleware::from_fn;
 use tower_http::catch_panic::CatchPanicLayer;
 use tower_http::decompression::RequestDecompressionLayer;
 use tower_http::limit::RequestBodyLimitLayer;
@@ -125,14 +126,18 @@ pub fn router(app: App) -> Router {
     let (routes, described) = openapi::described(quick.merge(slow)).split_for_parts();
     let document = openapi::Document::of(described);
     // The last layer is the outermost.
-    routes
+    let inner = routes
         .fallback(http::nothing_here)
-        .layer(axum::middleware::from_fn(http::conditional))
+        .layer(from_fn(http::conditional))
         .layer(RequestDecompressionLayer::new())
         .layer(RequestBodyLimitLayer::new(EXPORT_BYTES_MAX))
         .layer(axum::Extension(document))
         .layer(CatchPanicLayer::custom(http::panicked))
-        .layer(axum::middleware::from_fn(http::problems))
-        .layer(axum::middleware::from_fn(http::observed))
-        .with_state(app)
+        .layer(from_fn(http::routed))
+        .with_state(app);
+    // Around the router as a whole: it says itself which methods a path takes.
+    Router::new()
+        .fallback_service(inner)
+        .layer(from_fn(http::problems))
+        .layer(from_fn(http::observed))
 }

@@ -48,10 +48,13 @@ pub struct PermeabilityQuery {
     /// 7 days by the hour, 90 days by the day.
     last: Option<String>,
     /// PT1M, PT1H (usual) or P1D.
+    #[param(inline)]
     step: Option<SeriesStep>,
     /// `json`, or `csv` for a table; else as `Accept` says.
+    #[param(inline)]
     format: Option<SeriesFormat>,
     /// `si` or `us`.
+    #[param(inline)]
     units: Option<UnitSystem>,
     /// At most so many points, up to 10,000; if left out 1,000, or 10,000 in a table.
     #[param(minimum = 1, maximum = 10000)]
@@ -159,7 +162,8 @@ async fn by_hour(asked: &Asked<'_>) -> Result<Points, StoreError> {
 async fn by_day(asked: &Asked<'_>) -> Result<Points, StoreError> {
     let Asked { app, plant, site, units, .. } = asked;
     let n = asked.limit as usize;
-    let mut days = app.store.days(&plant.id, &site.train.id, asked.span, asked.limit + 1).await?;
+    // All of them: the store gives the last days of a span, and a page is its first ones.
+    let mut days = app.store.days(&plant.id, &site.train.id, asked.span, u32::MAX).await?;
     let next = days.get(n).map(|d| d.start);
     days.truncate(n);
     let hours = match (days.first(), days.last()) {

@@ -13,6 +13,7 @@ use crate::answers::{PlantView, UnitSystem, Units, plant_view};
 #[into_params(parameter_in = Query)]
 pub struct UnitsQuery {
     /// `si` (bar, °C, L/(m²·h)) or `us` (psi, °F, gfd).
+    #[param(inline)]
     units: Option<UnitSystem>,
 }
 

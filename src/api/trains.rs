@@ -41,8 +41,10 @@ pub enum TrainOrder {
 #[into_params(parameter_in = Query)]
 pub struct TrainsQuery {
     /// `plant`, or `clean_by`: the one to clean first comes first.
+    #[param(inline)]
     order: Option<TrainOrder>,
     /// `si` or `us`.
+    #[param(inline)]
     units: Option<UnitSystem>,
     /// At most so many, up to 1,000; 100 if left out.
     #[param(minimum = 1, maximum = 1000)]

@@ -5,6 +5,7 @@ use axum::http::{HeaderName, HeaderValue};
 use axum::middleware::Next;
 use axum::response::Response;
 use tracing::Instrument;
+use tracing::field::Empty;
 
 use crate::store::new_id;
 
@@ -15,14 +16,26 @@ const REQUEST_ID_LONGEST: usize = 100;
 pub async fn observed(request: Request, next: Next) -> Response {
     let begun = std::time::Instant::now();
     let id = request_id(&request);
-    let route = request.extensions().get::<MatchedPath>().map_or("", MatchedPath::as_str);
-    let span = tracing::info_span!("request", request_id = %id, method = %request.method(), route);
+    let method = request.method().clone();
+    let span = tracing::info_span!("request", request_id = %id, %method, route = Empty);
     let mut response = next.run(request).instrument(span.clone()).await;
+    if let Some(route) = response.extensions().get::<MatchedPath>() {
+        span.record("route", route.as_str());
+    }
     let latency_ms = u64::try_from(begun.elapsed().as_millis()).unwrap_or(u64::MAX);
     let status = response.status().as_u16();
     span.in_scope(|| tracing::info!(status, latency_ms, "answered"));
     if let Ok(id) = HeaderValue::from_str(&id) {
         response.headers_mut().insert(REQUEST_ID, id);
+    }
+    response
+}
+
+/// Leaves the route, which only what is inside of the router knows, on the answer.
+pub async fn routed(route: Option<MatchedPath>, request: Request, next: Next) -> Response {
+    let mut response = next.run(request).await;
+    if let Some(route) = route {
+        response.extensions_mut().insert(route);
     }
     response
 }

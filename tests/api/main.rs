@@ -1,0 +1,11 @@
+//! The service over HTTP: a server on a free port, a database of its own, a simulated plant.
+
+mod exports;
+mod health;
+mod openapi;
+mod permeability;
+mod problems;
+mod readings;
+mod receipts;
+mod support;
+mod trains;
