@@ -41,6 +41,18 @@ impl AlarmRefused {
     }
 }
 
+/// What people may do to an alarm as it stands.
+pub const fn acts_allowed(alarm: &Alarm) -> &'static [AlarmActKind] {
+    use AlarmActKind::*;
+    let shelf = alarm.kind.can_be_shelved();
+    match alarm.state {
+        AlarmState::Unacknowledged if shelf => &[Acknowledge, Shelve],
+        AlarmState::Unacknowledged | AlarmState::ReturnedUnacknowledged => &[Acknowledge],
+        AlarmState::Acknowledged | AlarmState::Shelved if shelf => &[Shelve],
+        _ => &[],
+    }
+}
+
 fn not_from(state: AlarmState) -> &'static str {
     match state {
         AlarmState::Unacknowledged => "the alarm stands; it can be acknowledged or shelved",

@@ -10,7 +10,7 @@ mod step;
 #[cfg(test)]
 mod tests;
 
-pub use act::{AlarmRefused, MAX_SHELF_US, acknowledge, shelve};
+pub use act::{AlarmRefused, MAX_SHELF_US, acknowledge, acts_allowed, shelve};
 pub use alarm::{Alarm, AlarmAct, AlarmActKind, AlarmKind, AlarmState, Detail, Response};
 pub use condition::{Condition, Withheld, conditions};
 pub use step::{AlarmChange, Look, Scope, Turn, step};

@@ -56,6 +56,18 @@ pub enum Turn {
 }
 
 impl Turn {
+    /// The word of history for it.
+    pub const fn code(self) -> &'static str {
+        match self {
+            Self::Raised => "raised",
+            Self::RaisedAgain => "raised_again",
+            Self::Sounds => "sounds",
+            Self::Quiet => "quiet",
+            Self::Returned => "returned",
+            Self::Updated => "updated",
+            Self::Over => "over",
+        }
+    }
     /// Whether somebody must be told.
     pub const fn tells(self) -> bool {
         matches!(self, Self::Raised | Self::RaisedAgain | Self::Sounds)

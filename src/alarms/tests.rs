@@ -118,6 +118,9 @@ fn every_state_meets_every_act() {
         assert_eq!(told.as_ref().map(|a| a.state).ok(), acknowledged, "acknowledge {from:?}");
         let silent = shelve(&alarm, "Sam", at(12), "booked", at(3));
         assert_eq!(silent.as_ref().map(|a| a.state).ok(), shelved, "shelve {from:?}");
+        let allowed = acts_allowed(&alarm);
+        assert_eq!(allowed.contains(&AlarmActKind::Acknowledge), acknowledged.is_some());
+        assert_eq!(allowed.contains(&AlarmActKind::Shelve), shelved.is_some());
         for refused in [told.err(), silent.err()].into_iter().flatten() {
             assert_eq!(refused, AlarmRefused::NotFrom(from));
             assert!(!refused.to_string().is_empty());

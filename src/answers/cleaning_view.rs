@@ -4,13 +4,14 @@
 use serde::Serialize;
 use utoipa::ToSchema;
 
-use super::reason::{phase_code, verdict_words};
+use super::reason::{phase_code, step_class_words, verdict_words};
 use super::step_view::{StepView, step_view};
 use super::time::{PlantTime, day_words};
 use super::units::{UnitCodes, Units, unit_maps};
-use crate::analysis::{Level, Run, Site, Verdict, as_known};
+use crate::analysis::{Baseline, Level, Run, Site, Verdict, as_known};
 use crate::base::{DAY_US, HOUR_US, Instant, TrainId, Zone};
-use crate::plant::{Phase, Step};
+use crate::orders::Outcome;
+use crate::plant::{Phase, Step, classes_by_name};
 
 /// A clean.
 #[derive(Clone, Debug, PartialEq, Serialize, ToSchema)]
@@ -46,6 +47,9 @@ pub struct CleaningView {
     pub can_tell_from: Option<PlantTime>,
     /// The verdict in words, and what it stands on.
     pub detail: String,
+    /// What does not fit in the record itself.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub notes: Vec<String>,
     /// The figures behind it.
     pub figures: Option<CleaningFigures>,
 }
@@ -149,8 +153,29 @@ pub fn recorded_cleaning(
         known: judged.known,
         can_tell_from: judged.can_tell_from,
         detail: judged.detail,
+        notes: notes(clean.steps),
         figures: judged.figures,
     }
+}
+
+/// Chemicals whose names say another class than their steps do.
+fn notes(steps: &[Step]) -> Vec<String> {
+    let mut out = Vec::new();
+    for (i, step) in steps.iter().enumerate() {
+        let Some(name) = &step.chemical else { continue };
+        let named = classes_by_name(name);
+        if named.is_empty() || named.contains(&step.class) {
+            continue;
+        }
+        let says: Vec<&str> = named.iter().map(|c| step_class_words(*c)).collect();
+        out.push(format!(
+            "Step {} is recorded as {}, and the name {name} says {}: both count.",
+            i + 1,
+            step_class_words(step.class),
+            says.join(" and ")
+        ));
+    }
+    out
 }
 
 /// The id of a clean that the state of the train showed: the train, and the start in UTC.
@@ -185,9 +210,10 @@ pub fn inferred_cleaning(
         known: judged.known,
         can_tell_from: judged.can_tell_from,
         detail: format!(
-            "{} The state of the train showed this clean; confirm it or discard it.",
+            "{} The state of the train showed this clean; record what was done, if you know it.",
             judged.detail
         ),
+        notes: Vec::new(),
         figures: judged.figures,
     }
 }
@@ -220,10 +246,11 @@ impl Judged {
 fn judged(zone: &Zone, site: &Site, units: &Units, run: &Run, as_of: Instant) -> Judged {
     let run = &as_known(run, as_of);
     let known = PlantTime::optional(zone, run.verdict_known);
-    let figures = Some(figures(zone, site, units, run));
+    let worth = Worth::from(run);
+    let figures = Some(figures(zone, site, units, &worth));
     let verdict = Some(run.verdict);
     if run.verdict != Verdict::CannotTellYet {
-        let detail = told(units, run);
+        let detail = told(units, &worth);
         return Judged { verdict, known, can_tell_from: None, detail, figures };
     }
     if run.verdict_known.is_some() {
@@ -247,11 +274,50 @@ fn earliest_verdict(zone: &Zone, run: &Run, as_of: Instant) -> Instant {
     zone.day(enough.plus(-1)).to
 }
 
+/// What a clean was worth, by the run that it began or as an order keeps it.
+pub(super) struct Worth {
+    verdict: Verdict,
+    before: Option<Level>,
+    after: Option<Level>,
+    best: Option<Baseline>,
+    restored_share: Option<f64>,
+    regained_share: Option<f64>,
+    like_flux: Option<bool>,
+}
+
+impl From<&Run> for Worth {
+    fn from(run: &Run) -> Self {
+        Self {
+            verdict: run.verdict,
+            before: run.before,
+            after: run.after,
+            best: run.best,
+            restored_share: run.restored_share(),
+            regained_share: run.regained_share(),
+            like_flux: run.like_flux(),
+        }
+    }
+}
+
+impl From<&Outcome> for Worth {
+    fn from(o: &Outcome) -> Self {
+        Self {
+            verdict: o.verdict,
+            before: o.before,
+            after: o.after,
+            best: o.best,
+            restored_share: o.restored_share,
+            regained_share: o.regained_share,
+            like_flux: o.like_flux,
+        }
+    }
+}
+
 /// The verdict in words with its numbers.
-fn told(units: &Units, run: &Run) -> String {
-    let mut detail = verdict_words(run.verdict).to_owned();
-    let share = run.restored_share().map(|s| units.share.text(s));
-    let regained = run.regained_share().map(|s| units.share.text(s));
+pub(super) fn told(units: &Units, worth: &Worth) -> String {
+    let mut detail = verdict_words(worth.verdict).to_owned();
+    let share = worth.restored_share.map(|s| units.share.text(s));
+    let regained = worth.regained_share.map(|s| units.share.text(s));
     match (share, regained) {
         (Some(s), Some(r)) => {
             detail
@@ -260,14 +326,15 @@ fn told(units: &Units, run: &Run) -> String {
         (Some(s), None) => detail.push_str(&format!(" It reached {s}.")),
         _ => {}
     }
-    if run.like_flux() == Some(false) {
+    if worth.like_flux == Some(false) {
         detail
             .push_str(" Flux before and after differs by more than 15 %, so they compare poorly.");
     }
     detail
 }
 
-fn figures(zone: &Zone, site: &Site, units: &Units, run: &Run) -> CleaningFigures {
+/// The figures behind a verdict.
+pub(super) fn figures(zone: &Zone, site: &Site, units: &Units, worth: &Worth) -> CleaningFigures {
     let (codes, labels) = unit_maps(&[
         ("permeability", &units.permeability),
         ("best", &units.permeability),
@@ -278,16 +345,17 @@ fn figures(zone: &Zone, site: &Site, units: &Units, run: &Run) -> CleaningFigure
         ("regained", &units.share),
     ]);
     let view = |l: Level| level(zone, site, units, &l);
+    let best = worth.best.map(|b| site.permeability(b.resistance_1_m));
     CleaningFigures {
         units: codes,
         unit_labels: labels,
-        before: run.before.map(view),
-        after: run.after.map(view),
-        best: units.permeability.optional(run.best.map(|b| site.permeability(b.resistance_1_m))),
-        best_baseline: run.best.map(|b| b.kind.code().to_owned()),
-        restored: units.share.optional(run.restored_share()),
-        regained: units.share.optional(run.regained_share()),
-        like_flux: run.like_flux(),
+        before: worth.before.map(view),
+        after: worth.after.map(view),
+        best: units.permeability.optional(best),
+        best_baseline: worth.best.map(|b| b.kind.code().to_owned()),
+        restored: units.share.optional(worth.restored_share),
+        regained: units.share.optional(worth.regained_share),
+        like_flux: worth.like_flux,
     }
 }
 

@@ -21,13 +21,16 @@ mod tests {
 
     #[derive(OpenApi)]
     #[openapi(components(schemas(
+        AlarmView,
         CleaningView,
         CyclesView,
         FoulingView,
+        Page<AlarmView>,
         Page<CleaningView>,
         Page<ReceiptView>,
         Page<RecommendationView>,
         Page<TrainView>,
+        Page<WorkOrderView>,
         PermeabilityView,
         PlantView,
         Problem,
@@ -40,10 +43,12 @@ mod tests {
         let schemas = doc["components"]["schemas"].as_object().unwrap();
         // A page holds the schema of its own kind of item.
         for (page, field) in [
+            ("Page_AlarmView", "response"),
             ("Page_CleaningView", "verdict"),
             ("Page_ReceiptView", "digest"),
             ("Page_RecommendationView", "clears_when"),
             ("Page_TrainView", "standing"),
+            ("Page_WorkOrderView", "acceptance"),
         ] {
             let item = &schemas[page]["properties"]["items"]["items"]["properties"];
             assert!(item.get(field).is_some(), "{page}: {item}");

@@ -295,6 +295,15 @@ pub const fn step_class_code(class: StepClass) -> &'static str {
     }
 }
 
+/// A class of chemical, inside a sentence.
+pub const fn step_class_words(class: StepClass) -> &'static str {
+    match class {
+        StepClass::Rinse => "rinse water",
+        StepClass::Other => "a chemical of unknown class",
+        _ => step_class_code(class),
+    }
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

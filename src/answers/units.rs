@@ -29,6 +29,9 @@ enum Round {
     Decimals(usize),
 }
 
+/// The avoirdupois pound in kg, exact by definition.
+const POUND_KG: f64 = 0.453_592_37;
+
 /// How one quantity is shown.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Shown {
@@ -126,6 +129,8 @@ pub struct Units {
     pub volume_per_area: Shown,
     /// From m3.
     pub volume: Shown,
+    /// From kg.
+    pub mass: Shown,
     /// From m2.
     pub area: Shown,
     /// A chance, from 0 to 1.
@@ -173,6 +178,13 @@ impl Units {
                 round: Round::Figures(3),
             },
             volume: shown(pick("m3", "[gal_us]"), Round::Figures(4)),
+            mass: Shown {
+                unit: if us { "[lb_av]" } else { "kg" },
+                label: if us { "lb" } else { "kg" },
+                factor: if us { POUND_KG } else { 1.0 },
+                offset: 0.0,
+                round: Round::Figures(3),
+            },
             area: shown(area, Round::Figures(6)),
             chance: shown(table("1"), Round::Figures(2)),
         }

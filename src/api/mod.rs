@@ -2,6 +2,9 @@
 //! of what there is. What every request has in common is in `http`: what may come in, how
 //! problems are said, pages of lists, entity tags.
 
+mod acts;
+mod alarms;
+mod cleanings;
 mod cycles;
 mod exports;
 mod fouling;
@@ -9,13 +12,17 @@ mod health;
 mod http;
 mod index;
 mod openapi;
+mod order_acts;
 mod permeability;
 mod plant;
+mod posted;
 mod readings;
 mod receipts;
+mod recommendations;
 mod sources;
 mod spool;
 mod trains;
+mod work_orders;
 
 use std::sync::Arc;
 use std::time::Duration;
@@ -75,6 +82,28 @@ fn operations() -> OpenApiRouter<App> {
         .routes(routes!(permeability::series))
         .routes(routes!(cycles::list))
         .routes(routes!(fouling::one))
+        .routes(routes!(cleanings::list, cleanings::post))
+        .routes(routes!(cleanings::one))
+        .routes(routes!(recommendations::list))
+        .routes(routes!(recommendations::one))
+        .routes(routes!(recommendations::accept))
+        .routes(routes!(recommendations::defer))
+        .routes(routes!(recommendations::decline))
+        .routes(routes!(alarms::list))
+        .routes(routes!(alarms::one))
+        .routes(routes!(alarms::acknowledge))
+        .routes(routes!(alarms::shelve))
+        .routes(routes!(work_orders::list, work_orders::post))
+        .routes(routes!(work_orders::one))
+        .routes(routes!(order_acts::approve))
+        .routes(routes!(order_acts::schedule))
+        .routes(routes!(order_acts::start))
+        .routes(routes!(order_acts::wait))
+        .routes(routes!(order_acts::complete))
+        .routes(routes!(order_acts::verify))
+        .routes(routes!(order_acts::reject))
+        .routes(routes!(order_acts::cancel))
+        .routes(routes!(order_acts::external))
         .routes(routes!(index::index))
         .routes(routes!(health::live))
         .routes(routes!(health::ready))

@@ -8,7 +8,7 @@ use tokio::task::JoinSet;
 use tokio::time::{MissedTickBehavior, interval};
 
 use crate::store::StoreError;
-use crate::work::Worker;
+use crate::work::{self, Worker};
 
 /// One job.
 pub struct Job {
@@ -20,12 +20,23 @@ pub struct Job {
 }
 
 /// The jobs there are.
-pub const JOBS: [Job; 1] = [
+pub const JOBS: [Job; 2] = [
     // What a post could not work itself: it failed, or was long, or the process ended.
     Job {
         name: "catch_up",
         every: Duration::from_secs(60),
         run: |worker| Box::pin(async move { worker.catch_up(None).await.map(|_| ()) }),
+    },
+    // What the wall clock alone brings about: data that are too old, shelves that end.
+    Job {
+        name: "watch",
+        every: Duration::from_secs(60),
+        run: |worker| {
+            Box::pin(async move {
+                let now = worker.clock().now();
+                work::watch(worker.store(), &worker.plant(), now).await.map(|_| ())
+            })
+        },
     },
 ];
 

@@ -5,8 +5,8 @@ use serde::{Deserialize, Serialize};
 use crate::base::Instant;
 use crate::plant::{Step, StepClass, VerifiedRinse, classes_by_name, rinse_separates};
 
-/// What comes of two classes that meet.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
+/// What comes of two classes that meet. Ordered: the worst first.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Serialize, Deserialize)]
 #[serde(rename_all = "snake_case")]
 pub enum ConflictKind {
     /// Hypochlorite and acid: chlorine gas.

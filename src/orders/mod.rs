@@ -21,7 +21,7 @@ pub use chemistry::{Conflict, ConflictKind, LastChemical, conflicts};
 pub use draft::{ByHand, by_hand, draft};
 pub use order::{
     ActKind, Actuals, Annotation, CancelledWhy, Criterion, External, IntegrityTest, Note,
-    OrderState, Outcome, PlannedStep, Role, SignOff, Task, WorkOrder,
+    OrderState, Outcome, PlannedStep, Role, SignOff, Task, WorkOrder, number_of, spoken,
 };
 pub use outcome::outcome;
 pub use plan::{active_kg, check};

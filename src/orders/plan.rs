@@ -1,8 +1,7 @@
 //! The plan of an order: rinses that it needs, quantities, and whether it may be approved.
 
 use crate::advice::{AdvisedStep, Why};
-use crate::base::{Dimension, parse_quantity};
-use crate::plant::{Step, StepClass, Train, VerifiedRinse, rinse_separates};
+use crate::plant::{Step, StepClass, Train, VerifiedRinse, rinse_separates, strength_mg_l};
 
 use super::chemistry::{LastChemical, classes, left, planned};
 use super::order::PlannedStep;
@@ -18,23 +17,13 @@ const RINSE_CHECK: VerifiedRinse = VerifiedRinse {
     by: None,
 };
 
-/// A strength in mg/L; a share by mass is taken as of water, 1 % as 10 g/L. `None` if the text
-/// is neither.
-fn strength_mg_l(text: &str) -> Option<f64> {
-    parse_quantity(text, Dimension::Share)
-        .map(|share| share.value_si * 1e6)
-        .or_else(|_| parse_quantity(text, Dimension::Concentration).map(|c| c.value_si * 1e3))
-        .ok()
-        .filter(|mg_l| (0.0..=1e6).contains(mg_l))
-}
-
 /// Mass of active substance in a step's solution, kg; `None` unless strength and volume are
 /// both stated.
 pub fn active_kg(step: &Step) -> Option<f64> {
     if step.class == StepClass::Rinse {
         return None;
     }
-    Some(strength_mg_l(step.concentration.as_deref()?)? * step.volume_m3? / 1e3)
+    Some(strength_mg_l(step.concentration.as_deref()?).ok()? * step.volume_m3? / 1e3)
 }
 
 /// Adds what an advised list needs: checks to rinses that have none, a rinse in front where the
@@ -128,10 +117,10 @@ fn beyond_membrane(step: &Step, train: &Train) -> Option<(&'static str, RefusalW
         return None;
     }
     match strength_mg_l(text) {
-        None => Some(("concentration", RefusalWhy::StrengthUnreadable)),
-        Some(value) if value > limit => {
+        Err(_) => Some(("concentration", RefusalWhy::StrengthUnreadable)),
+        Ok(value) if value > limit => {
             Some(("concentration", RefusalWhy::ChlorineBeyondMembrane { value, limit }))
         }
-        Some(_) => None,
+        Ok(_) => None,
     }
 }

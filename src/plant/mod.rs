@@ -24,4 +24,4 @@ pub use model::{
     MonthTemperature, Phase, Plant, PressureKind, Procedure, RepeatedHour, Role, Service, Signal,
     Source, Stamp, Step, StepClass, TimeColumn, TimeFormat, Train, Values, VerifiedRinse,
 };
-pub use read::{Reading, read};
+pub use read::{Reading, read, strength_mg_l};

@@ -2,6 +2,7 @@
 
 use serde::Deserialize as _;
 use serde::de::value::{Error as ValueError, StrDeserializer};
+use sqlx::SqliteConnection;
 
 use super::dirty::{mark, to_json};
 use super::{Store, StoreError};
@@ -87,6 +88,32 @@ fn from_row(row: Row) -> Result<Cleaning, StoreError> {
     })
 }
 
+/// Records a clean inside a transaction under way, and marks the plant days that have to be
+/// worked again for it.
+pub(super) async fn insert(
+    conn: &mut SqliteConnection,
+    plant: &str,
+    cleaning: &Cleaning,
+    dirty: &[(TrainId, Instant)],
+) -> Result<(), StoreError> {
+    let kind = to_json(&cleaning.kind)?;
+    sqlx::query(INSERT)
+        .bind(plant)
+        .bind(cleaning.id.as_str())
+        .bind(cleaning.train.as_str())
+        .bind(cleaning.span.from.micros())
+        .bind(cleaning.span.to.micros())
+        .bind(kind.trim_matches('"'))
+        .bind(to_json(&cleaning.steps)?)
+        .bind(cleaning.work_order.as_deref())
+        .bind(cleaning.reference.as_deref())
+        .bind(cleaning.recorded.micros())
+        .bind(cleaning.by.as_deref())
+        .execute(&mut *conn)
+        .await?;
+    mark(conn, plant, dirty).await
+}
+
 impl Store {
     /// Records a clean, and marks the plant days that have to be worked again for it.
     ///
@@ -98,23 +125,8 @@ impl Store {
         cleaning: &Cleaning,
         dirty: &[(TrainId, Instant)],
     ) -> Result<(), StoreError> {
-        let kind = to_json(&cleaning.kind)?;
         let mut tx = self.write().await?;
-        sqlx::query(INSERT)
-            .bind(plant)
-            .bind(cleaning.id.as_str())
-            .bind(cleaning.train.as_str())
-            .bind(cleaning.span.from.micros())
-            .bind(cleaning.span.to.micros())
-            .bind(kind.trim_matches('"'))
-            .bind(to_json(&cleaning.steps)?)
-            .bind(cleaning.work_order.as_deref())
-            .bind(cleaning.reference.as_deref())
-            .bind(cleaning.recorded.micros())
-            .bind(cleaning.by.as_deref())
-            .execute(&mut *tx)
-            .await?;
-        mark(&mut tx, plant, dirty).await?;
+        insert(&mut tx, plant, cleaning, dirty).await?;
         Ok(tx.commit().await?)
     }
 

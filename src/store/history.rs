@@ -184,6 +184,18 @@ pub(super) async fn add(
     Ok(())
 }
 
+/// One thing as it is now, with what the transaction under way has made of it.
+pub(super) async fn item<T: DeserializeOwned>(
+    conn: &mut SqliteConnection,
+    plant: &str,
+    kind: ItemKind,
+    item: &str,
+) -> Result<Option<T>, StoreError> {
+    let row: Option<(String, i64, i64)> =
+        sqlx::query_as(ONE).bind(plant).bind(kind.code()).bind(item).fetch_optional(conn).await?;
+    row.map(|(text, _, _)| read(&text)).transpose()
+}
+
 /// The next number of a work order.
 pub(super) async fn next_order_number(
     conn: &mut SqliteConnection,
@@ -227,13 +239,7 @@ impl Store {
         kind: ItemKind,
         item: &str,
     ) -> Result<Option<T>, StoreError> {
-        let row: Option<(String, i64, i64)> = sqlx::query_as(ONE)
-            .bind(plant)
-            .bind(kind.code())
-            .bind(item)
-            .fetch_optional(&self.readers)
-            .await?;
-        row.map(|(text, _, _)| read(&text)).transpose()
+        self::item(&mut *self.readers.acquire().await?, plant, kind, item).await
     }
 
     /// The history of one thing after a place, oldest first.

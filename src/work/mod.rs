@@ -4,9 +4,11 @@
 //!
 //! Everything is written through one [`crate::store::Changes`]: all of it or nothing.
 
+mod acts;
 mod clock;
 mod decide;
 mod load;
+mod stale;
 mod train;
 mod wall;
 mod worker;
@@ -18,8 +20,10 @@ use crate::base::{Instant, SourceId, Span, Tag, TrainId};
 use crate::plant::Plant;
 use crate::store::{Changes, DirtyDay, Store, StoreError};
 
+pub use acts::{ActError, CleaningRefused, Desk, Done, NewCleaning};
 pub use clock::{newest_by_train, stale_after_us};
 pub use load::{TrainState, train_state, train_states};
+pub use stale::watch;
 pub use wall::WallClock;
 pub use worker::Worker;
 

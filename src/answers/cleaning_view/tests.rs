@@ -64,7 +64,7 @@ fn an_inferred_clean_shows_the_figures_behind_its_verdict() {
             "known": "2026-03-11T00:00:00+00:00", "can_tell_from": null,
             "detail": "Partly restored: 85 to 95 % of the best permeability after a clean. It \
                        reached 93.5 %, and took back 89.5 % of the added resistance. The state of \
-                       the train showed this clean; confirm it or discard it.",
+                       the train showed this clean; record what was done, if you know it.",
             "figures": {
                 "before": {"permeability": 138.0, "interval": [137.5, 138.5],
                            "resistance": 2.6e12, "flux": 61.8, "temperature": 9.0,

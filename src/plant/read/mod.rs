@@ -14,7 +14,7 @@ use std::path::Path;
 
 use toml::de::DeTable;
 
-pub(super) use procedure::strength_mg_l;
+pub use procedure::strength_mg_l;
 pub(super) use walk::Value;
 
 use super::mistake::{Mistake, Report};

@@ -147,26 +147,29 @@ pub(super) fn chlorine_mg_l(value: &Value<'_>) -> Option<f64> {
 fn strength(value: &Value<'_>) -> Option<String> {
     let text = value.text()?;
     match strength_mg_l(text) {
-        Ok(mg_l) if (0.0..=1e6).contains(&mg_l) => Some(text.to_owned()),
-        Ok(_) => {
-            value.mistake(format!("{} is out of range", value.name()), "it is from 0 to 100 %");
-            None
-        }
+        Ok(_) => Some(text.to_owned()),
         Err(error) => {
-            let help = "write a strength like `0.1 %` or `500 mg/L`";
+            let help = error.help.unwrap_or_default();
             value.mistake(format!("{}: {}", value.name(), error.message), help);
             None
         }
     }
 }
 
-/// A strength in mg/L; a share by mass is taken as of water, 1 % as 10 g/L.
+/// A strength in mg/L, from 0 to 1,000,000; a share by mass is taken as of water, 1 % as 10 g/L.
 ///
 /// # Errors
-/// If the text is neither a share nor a concentration.
-pub(in crate::plant) fn strength_mg_l(text: &str) -> Result<f64, QuantityError> {
-    match parse_quantity(text, Dimension::Share) {
+/// If the text is neither a share nor a concentration, or out of that range.
+pub fn strength_mg_l(text: &str) -> Result<f64, QuantityError> {
+    let help = |message: String, help: &str| QuantityError { message, help: Some(help.to_owned()) };
+    let read = match parse_quantity(text, Dimension::Share) {
         Ok(share) => Ok(share.value_si * 1e6),
         Err(_) => parse_quantity(text, Dimension::Concentration).map(|c| c.value_si * 1e3),
+    };
+    let mg_l = read.map_err(|e| help(e.message, "write a strength like `0.1 %` or `500 mg/L`"))?;
+    if (0.0..=1e6).contains(&mg_l) {
+        Ok(mg_l)
+    } else {
+        Err(help(format!("`{text}` is out of range"), "it is from 0 to 100 %"))
     }
 }

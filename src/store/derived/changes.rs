@@ -6,8 +6,8 @@ use sqlx::{Sqlite, Transaction};
 use super::{assessments, cycles, days, findings, hours, now, phases, runs};
 use crate::analysis::{Assessment, DayRows, Finding, Run};
 use crate::base::{Instant, Span, TrainId};
-use crate::store::history::{self, Entry};
-use crate::store::{DirtyDay, Store, StoreError, dirty, receipts};
+use crate::store::history::{self, Entry, ItemKind};
+use crate::store::{Act, Cleaning, DirtyDay, Store, StoreError, acts, cleanings, dirty, receipts};
 
 pub(in crate::store) const DERIVATION: &str =
     "SELECT version, revision FROM derivation WHERE plant = ?1";
@@ -127,6 +127,32 @@ impl Changes {
     /// Adds an entry to the history and makes it the newest of its thing.
     pub async fn add_entry(&mut self, entry: &Entry) -> Result<(), StoreError> {
         history::add(&mut self.tx, &self.plant, entry).await
+    }
+
+    /// One thing as it is now. Nobody else can change it before these changes are done.
+    pub async fn item<T: serde::de::DeserializeOwned>(
+        &mut self,
+        kind: ItemKind,
+        item: &str,
+    ) -> Result<Option<T>, StoreError> {
+        history::item(&mut self.tx, &self.plant, kind, item).await
+    }
+
+    /// Adds what a person did to the journal of acts.
+    pub async fn add_act(&mut self, act: &Act) -> Result<(), StoreError> {
+        acts::insert(&mut self.tx, &self.plant, act).await
+    }
+
+    /// Records a clean, and marks the plant days that have to be worked again for it.
+    ///
+    /// # Errors
+    /// [`StoreError::Exists`] if its reference is taken.
+    pub async fn add_cleaning(
+        &mut self,
+        cleaning: &Cleaning,
+        dirty: &[(TrainId, Instant)],
+    ) -> Result<(), StoreError> {
+        cleanings::insert(&mut self.tx, &self.plant, cleaning, dirty).await
     }
 
     /// The next number of a work order.
