@@ -13,6 +13,7 @@ use super::units::{Shown, Units};
 use crate::advice::{Act, Recommendation, StepsFrom, cautions};
 use crate::analysis::{Dates, Evidence, FindingKind, LimitKind, Measure};
 use crate::base::Zone;
+use crate::orders::spoken;
 use crate::plant::{Plant, Train};
 
 /// A recommendation.
@@ -163,7 +164,7 @@ pub fn recommendation_view(
         }
         .to_owned(),
         cautions: cautions(train, &r.steps).iter().map(|c| caution_words(*c).to_owned()).collect(),
-        work_order: r.work_order.map(|n| format!("WO {n}")),
+        work_order: r.work_order.map(spoken),
         decisions: r
             .decisions
             .iter()

@@ -47,19 +47,22 @@ pub fn refused(zone: &Zone, what: &str, name: &str, error: ActError) -> Failure 
         ActError::Recommendation(why) => Problem::act_refused(why).into(),
         ActError::Alarm(why) => Problem::alarm_refused(why).into(),
         ActError::Order(refusal) => Problem::order_refused(&refusal).into(),
-        ActError::Cleaning(why) => cleaning_refused(zone, &why),
+        // A work order tells its clean under `actuals`.
+        ActError::Cleaning(why) if what == "work order" => cleaning_refused(zone, &why, "/actuals"),
+        ActError::Cleaning(why) => cleaning_refused(zone, &why, ""),
         ActError::Store(error) => error.into(),
     }
 }
 
-fn cleaning_refused(zone: &Zone, why: &CleaningRefused) -> Failure {
+fn cleaning_refused(zone: &Zone, why: &CleaningRefused, within: &str) -> Failure {
     let mut detail = why.to_string();
     if let CleaningRefused::Overlaps { span, .. } = why {
         let words = |at| moment_words(zone, at, span.to);
         detail = format!("{detail}: it was from {} to {}", words(span.from), words(span.to));
     }
     let kind = if why.is_conflict() { ProblemKind::Conflict } else { ProblemKind::Invalid };
-    let errors = vec![ProblemError::at_pointer(why.pointer(), detail.as_str())];
+    let errors =
+        vec![ProblemError::at_pointer(format!("{within}{}", why.pointer()), detail.as_str())];
     let mut letters = detail.chars();
     let first = letters.next().map(|c| c.to_uppercase().to_string()).unwrap_or_default();
     kind.problem(format!("{first}{}.", letters.as_str())).with_errors(errors).into()

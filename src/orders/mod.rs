@@ -6,6 +6,7 @@
 mod apply;
 mod chemistry;
 mod draft;
+mod number;
 mod order;
 mod outcome;
 mod plan;
@@ -19,9 +20,10 @@ mod tests;
 pub use apply::{Deed, OrderAct, PlanContext, apply, transitions};
 pub use chemistry::{Conflict, ConflictKind, LastChemical, conflicts};
 pub use draft::{ByHand, by_hand, draft};
+pub use number::{number_of, spoken};
 pub use order::{
     ActKind, Actuals, Annotation, CancelledWhy, Criterion, External, IntegrityTest, Note,
-    OrderState, Outcome, PlannedStep, Role, SignOff, Task, WorkOrder, number_of, spoken,
+    OrderState, Outcome, PlannedStep, Role, SignOff, Task, WorkOrder,
 };
 pub use outcome::outcome;
 pub use plan::{active_kg, check};

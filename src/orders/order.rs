@@ -382,23 +382,6 @@ pub struct WorkOrder {
     pub external: Option<External>,
 }
 
-/// A number as it is spoken: `WO 41`.
-pub fn spoken(number: i64) -> String {
-    format!("WO {number}")
-}
-
-/// The number of a text such as `WO 41`, `wo-41` or `41`.
-pub fn number_of(text: &str) -> Option<i64> {
-    let text = text.trim();
-    let rest = match text.get(..2) {
-        Some(start) if start.eq_ignore_ascii_case("WO") => text.get(2..)?,
-        _ => text,
-    };
-    let digits = rest.trim_start_matches([' ', '-', '_']);
-    let number = digits.parse::<u32>().ok().filter(|n| *n > 0)?;
-    digits.starts_with(|c: char| c.is_ascii_digit()).then_some(i64::from(number))
-}
-
 impl WorkOrder {
     /// Adds an annotation unless the same was made before; tells whether it did.
     pub fn annotate(&mut self, at: Instant, note: Note) -> bool {

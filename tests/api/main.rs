@@ -1,5 +1,6 @@
 //! The service over HTTP: a server on a free port, a database of its own, a simulated plant.
 
+mod cleanings;
 mod exports;
 mod health;
 mod openapi;
@@ -7,5 +8,8 @@ mod permeability;
 mod problems;
 mod readings;
 mod receipts;
+mod recommendations;
+mod site;
 mod support;
 mod trains;
+mod work_orders;

@@ -153,14 +153,3 @@ proptest! {
         }
     }
 }
-
-#[test]
-fn a_number_is_read_as_it_is_spoken() {
-    for text in ["WO 41", "wo 41", "WO41", "WO-41", " 41 "] {
-        assert_eq!(number_of(text), Some(41), "{text}");
-    }
-    assert_eq!(number_of(&spoken(7)), Some(7));
-    for text in ["", "WO", "WO -1 x", "0", "+41", "wörk"] {
-        assert_eq!(number_of(text), None, "{text}");
-    }
-}
