@@ -2,7 +2,7 @@
 
 use serde::{Deserialize, Serialize};
 
-use crate::analysis::{Dates, Evidence, Standing};
+use crate::analysis::{Dates, Evidence, Measure, Standing};
 use crate::base::{DAY_US, Instant, TrainId};
 
 use super::{Action, AdvisedStep, ClearsWhen, Proposal, StepsFrom, Urgency};
@@ -196,7 +196,8 @@ fn updated(open: &Recommendation, p: &Proposal, now: Instant) -> Recommendation 
     next
 }
 
-/// Whether a change is worth an entry: the dates move once a day, the evidence's value every hour.
+/// Whether a change is worth an entry: the dates move once a day, the evidence's value every
+/// hour; by a point of loss, or a fiftieth of a TMP, it has moved.
 fn matters(open: &Recommendation, next: &Recommendation) -> bool {
     let kinds = |r: &Recommendation| -> Vec<_> {
         r.evidence.iter().map(|e| (e.finding, e.limit_kind)).collect()
@@ -206,6 +207,16 @@ fn matters(open: &Recommendation, next: &Recommendation) -> bool {
         || open.start_by != next.start_by
         || open.steps != next.steps
         || kinds(open) != kinds(next)
+        || open.evidence.iter().zip(&next.evidence).any(|(a, b)| moved(a, b))
+}
+
+fn moved(old: &Evidence, new: &Evidence) -> bool {
+    let step = match new.measure {
+        Measure::Share => 0.01,
+        Measure::Pressure => 0.02 * old.value.abs(),
+        Measure::Count => 0.5,
+    };
+    (new.value - old.value).abs() > step
 }
 
 fn declined(known: &[Recommendation], p: &Proposal, now: Instant) -> bool {

@@ -104,7 +104,7 @@ impl<'a> Decisions<'a> {
             changes.add_entry(&entry).await?;
         }
         for (turn, alarm) in self.sound(look, &findings) {
-            let (open, word) = (!alarm.is_normal(), alarm_word(turn));
+            let (open, word) = (!alarm.is_normal(), turn.code());
             let entry = self.entry(look, ItemKind::Alarm, &alarm.id, open, word, &alarm)?;
             changes.add_entry(&entry).await?;
         }
@@ -260,17 +260,5 @@ const fn order_word(turn: OrderTurn) -> &'static str {
         OrderTurn::Completed => "completed",
         OrderTurn::Cancelled => "cancelled",
         OrderTurn::Opened => "drafted",
-    }
-}
-
-const fn alarm_word(turn: Turn) -> &'static str {
-    match turn {
-        Turn::Raised => "raised",
-        Turn::RaisedAgain => "raised_again",
-        Turn::Sounds => "sounds",
-        Turn::Quiet => "quiet",
-        Turn::Returned => "returned",
-        Turn::Updated => "updated",
-        Turn::Over => "over",
     }
 }

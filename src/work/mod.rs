@@ -276,11 +276,11 @@ impl<'a> Road<'a> {
         };
         for train in &self.trains {
             let changed = self.worked.changed_from.get(&train.site.train.id);
-            if changed.is_some_and(|c| *c < before) {
-                if let Some(standing) = train.standing(self.plant, at) {
-                    let look = Instance { train, standing: &standing, reason: Some(reason) };
-                    decisions.decide(&look, &mut self.changes).await?;
-                }
+            if changed.is_some_and(|c| *c < before)
+                && let Some(standing) = train.standing(self.plant, at)
+            {
+                let look = Instance { train, standing: &standing, reason: Some(reason) };
+                decisions.decide(&look, &mut self.changes).await?;
             }
         }
         Ok(())

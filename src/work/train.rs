@@ -5,7 +5,7 @@ use crate::analysis::{
     RecordedClean, Rows, Run, Site, Standing,
 };
 use crate::base::{DAY_US, HOUR_US, Instant, SourceId, Span, Tag};
-use crate::orders::{Actuals, LastChemical, Named};
+use crate::orders::{Actuals, LastChemical, Named, number_of};
 use crate::plant::{Phase, Plant, Train};
 use crate::store::{Changes, Cleaning, CleaningFilter, Store, StoreError};
 
@@ -285,10 +285,9 @@ fn recorded(c: &Cleaning) -> RecordedClean {
 }
 
 fn named(c: &Cleaning) -> Option<Named> {
-    let digits = c.work_order.as_deref()?.trim_start_matches(|c: char| !c.is_ascii_digit());
     Some(Named {
         cleaning: c.id.clone(),
-        number: digits.parse().ok()?,
+        number: number_of(c.work_order.as_deref()?)?,
         actuals: Actuals {
             start: c.span.from,
             end: c.span.to,

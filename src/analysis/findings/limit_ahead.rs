@@ -16,6 +16,10 @@ pub fn tmp(site: &Site, standing: &Standing) -> Option<Evidence> {
 }
 
 fn evidence(site: &Site, standing: &Standing, kind: LimitKind, value: f64) -> Option<Evidence> {
+    // A limit that has held is not ahead.
+    if standing.hold(kind).held.is_some() {
+        return None;
+    }
     let dates = standing.dates_of(kind)?;
     let horizon = standing.as_of.plus(site.train.limits.planning_horizon_us);
     if dates.p10? > horizon {

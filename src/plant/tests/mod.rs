@@ -294,12 +294,6 @@ fn what_this_version_does_not_work_is_refused_by_name() {
     );
     check(
         "{ column = \"Time\" }",
-        "{ column = \"Time\", format = \"serial\" }",
-        "spreadsheet days",
-    );
-    check("{ column = \"Time\" }", "{ column = \"Time\", format = \"unix\" }", "unix seconds");
-    check(
-        "{ column = \"Time\" }",
         "{ column = \"Time\", like = \"31/12/2026 23:59:00\" }",
         "a format by example",
     );

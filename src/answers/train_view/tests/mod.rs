@@ -208,7 +208,7 @@ fn trains_are_ordered_by_when_they_must_be_clean() {
         .with(|h| h.hold(LimitKind::TmpClean, "2026-03-07T22:00", Some("2026-03-08T05:00")));
     let mut list = [None, Some(&far), Some(&held), Some(&near)];
     list.sort_by_key(|h| clean_by_order(h.map(|h| &h.standing)));
-    let order: Vec<_> = list.iter().map(|h| h.map(|h| std::ptr::from_ref(h))).collect();
+    let order: Vec<_> = list.iter().map(|h| h.map(std::ptr::from_ref)).collect();
     let expected = [Some(&held), Some(&near), Some(&far), None].map(|h| h.map(std::ptr::from_ref));
     assert_eq!(order, expected);
 }
