@@ -144,5 +144,8 @@ fn unsteady(samples: &Samples, span: &PhaseSpan, i: usize) -> Option<Reason> {
     held.sort_by(f64::total_cmp);
     let middle = held.get(n / 2).copied().unwrap_or(f64::NAN);
     let steady = n >= 2 && high <= middle * (1.0 + FLOW_BAND) && low >= middle * (1.0 - FLOW_BAND);
-    (!steady).then_some(Reason::UnsteadyFlow)
+    // The look back still reaches the rise of the flow: that is settling, not wandering.
+    let rising = span.began && now.since(span.from) < SETTLING_US + reach_us;
+    let why = if rising { Reason::JustStarted } else { Reason::UnsteadyFlow };
+    (!steady).then_some(why)
 }
