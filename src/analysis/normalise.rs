@@ -98,6 +98,9 @@ fn resistance(
     viscosity: &mut Viscosity,
 ) -> (f64, Option<Reason>) {
     let (flux, tmp, degc) = (samples.flux_m_s[i], samples.tmp_pa[i], samples.temperature_degc[i]);
+    if samples.frozen[i] {
+        return (f64::NAN, Some(Reason::Frozen));
+    }
     if flux.is_nan() {
         return (f64::NAN, Some(Reason::NoFlow));
     }
