@@ -6,12 +6,13 @@ use super::inspect::of_kind;
 use super::{Action, Case, ClearsWhen, Proposal, StepsFrom, Urgency};
 
 /// Reasons that point to an instrument or its line, not to how the train is run.
-const INSTRUMENT: [Reason; 5] = [
+const INSTRUMENT: [Reason; 6] = [
     Reason::NoFlow,
     Reason::NoPressure,
     Reason::NoTemperature,
     Reason::TemperatureOutOfRange,
     Reason::TmpUnderFloor,
+    Reason::Frozen,
 ];
 
 /// The rule.

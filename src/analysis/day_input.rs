@@ -33,6 +33,8 @@ pub struct Samples {
     pub tmp_pa: Vec<f64>,
     /// Temperature, degrees Celsius.
     pub temperature_degc: Vec<f64>,
+    /// Whether flow or a pressure reads what it read before the last backwash, unmoved.
+    pub frozen: Vec<bool>,
     /// Spacing of rows, microseconds.
     pub every_us: i64,
     /// State codes read that the plant file does not name.
@@ -102,6 +104,7 @@ pub fn samples(plant: &Plant, train: &Train, readings: &Readings, span: Span) ->
         flux_m_s: Vec::with_capacity(n),
         tmp_pa: Vec::with_capacity(n),
         temperature_degc: Vec::with_capacity(n),
+        frozen: Vec::with_capacity(n),
         every_us: every_us(plant, train),
         unknown_codes,
         times,
@@ -111,15 +114,21 @@ pub fn samples(plant: &Plant, train: &Train, readings: &Readings, span: Span) ->
         (feed.cursor(), permeate.cursor(), own_tmp.cursor());
     let mut state = state.cursor();
     let has_pressures = train.signals_of(Role::FeedPressure).next().is_some();
+    let mut still = [Still::default(); 3];
     for &time in &out.times {
         let flow_m3_s = flow.at(time);
         let index = state.at(time);
         let phase = if index.is_nan() { Phase::Unknown } else { state_phases[index as usize] };
-        let tmp_pa = if has_pressures {
-            science::tmp_dead_end_pa(feed.at(time), permeate.at(time))
+        let (feed_pa, permeate_pa) = (feed.at(time), permeate.at(time));
+        let (tmp_pa, first_pa) = if has_pressures {
+            (science::tmp_dead_end_pa(feed_pa, permeate_pa), feed_pa)
         } else {
-            own_tmp.at(time)
+            let own = own_tmp.at(time);
+            (own, own)
         };
+        let seen = [flow_m3_s, first_pa, permeate_pa];
+        let frozen = still.iter_mut().zip(seen).fold(false, |f, (s, v)| s.see(v, phase) || f);
+        out.frozen.push(frozen);
         out.phases.push(phase);
         out.flow_m3_s.push(flow_m3_s);
         out.flux_m_s.push(flow_m3_s / train.area_at(time));
@@ -127,6 +136,34 @@ pub fn samples(plant: &Plant, train: &Train, readings: &Readings, span: Span) ->
         out.temperature_degc.push(temperature.at(time));
     }
     out
+}
+
+/// Tells an instrument that stands still from one that reads a steady plant: flow and pressures
+/// all move when a train is backwashed.
+#[derive(Clone, Copy, Default)]
+struct Still {
+    value: f64,
+    /// The value was read in filtration.
+    filtered: bool,
+    /// And then in a backwash.
+    backwashed: bool,
+}
+
+impl Still {
+    /// Takes the next value; answers whether it is frozen. A value that is not there tells nothing.
+    fn see(&mut self, value: f64, phase: Phase) -> bool {
+        if value.is_nan() {
+            return false;
+        }
+        if value != self.value {
+            *self = Self { value, ..Self::default() };
+        }
+        let filtration = phase == Phase::Filtration;
+        let backwash = matches!(phase, Phase::Backwash | Phase::ChemicalBackwash);
+        self.backwashed |= self.filtered && backwash;
+        self.filtered |= filtration;
+        filtration && self.backwashed
+    }
 }
 
 /// The (source, tag) pairs whose readings a train's samples need.
@@ -327,4 +364,26 @@ fn union(a: &[Instant], b: &[Instant]) -> Vec<Instant> {
         out.push(next);
     }
     out
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_value_is_frozen_once_a_backwash_has_not_moved_it() {
+        use Phase::{Backwash, Filtration, Standby};
+        let frozen = |seen: &[(f64, Phase)]| {
+            let mut still = Still::default();
+            seen.iter().map(|(v, p)| still.see(*v, *p)).collect::<Vec<_>>()
+        };
+        let steady = [(3.0, Filtration), (3.0, Filtration), (3.0, Standby), (3.0, Filtration)];
+        assert_eq!(frozen(&steady), [false; 4], "nothing had to move");
+        let moved = [(3.0, Filtration), (5.0, Backwash), (3.0, Filtration)];
+        assert_eq!(frozen(&moved), [false; 3]);
+        let not_there = [(3.0, Filtration), (f64::NAN, Backwash), (3.0, Filtration)];
+        assert_eq!(frozen(&not_there), [false; 3]);
+        let stuck = [(3.0, Filtration), (3.0, Backwash), (3.0, Filtration), (3.1, Filtration)];
+        assert_eq!(frozen(&stuck), [false, false, true, false]);
+    }
 }

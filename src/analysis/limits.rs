@@ -1,5 +1,7 @@
 //! Limits and whether they have held: a limit counts once it was exceeded for the whole
-//! on-delay of filtration, and no longer once the value is back past the deadband.
+//! on-delay of filtration, and no longer once the value is back past the deadband. Until then
+//! an hour within the deadband neither counts nor ends it: an hour's two starts of cycle carry
+//! a noise of a point or more, and would let a limit hold days after it was passed.
 
 use serde::{Deserialize, Serialize};
 
@@ -68,7 +70,7 @@ impl LimitKind {
 /// How far a limit has come to counting.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Serialize, Deserialize)]
 pub struct Hold {
-    /// Filtration time for which it has been exceeded without a break, s.
+    /// Filtration time for which it has been exceeded without a return past the deadband, s.
     pub over_s: f64,
     /// Start of the first hour of that.
     pub since: Option<Instant>,
@@ -100,14 +102,68 @@ pub fn step(holds: &mut Holds, hour: &Hour, baseline_1_m: Option<f64>, limits: &
 }
 
 fn step_one(hold: &mut Hold, hour: &Hour, value: f64, limit: f64, clear: f64, limits: &Limits) {
-    let kept = if hold.held.is_some() { value >= clear } else { value >= limit };
-    if !kept {
+    if value < clear {
         *hold = Hold::default();
+    }
+    if value < limit {
         return;
     }
     hold.since = hold.since.or(Some(hour.start));
     hold.over_s += hour.filtration_s;
     if hold.held.is_none() && hold.over_s * 1e6 >= limits.on_delay_us as f64 {
         hold.held = Some(hour.end);
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::analysis::Quality;
+    use crate::base::{HOUR_US, TrainId};
+    use crate::plant::{HoldLimit, Phase};
+
+    const LIMITS: Limits = Limits {
+        permeability_loss: HoldLimit { advisory: 0.20, clean: 0.30 },
+        tmp_pa: HoldLimit { advisory: f64::INFINITY, clean: f64::INFINITY },
+        on_delay_us: 3 * HOUR_US,
+        deadband: 0.02,
+        planning_horizon_us: 0,
+    };
+
+    /// Steps hours of these losses of permeability, in per cent; answers when the clean limit held.
+    fn held(losses: &[f64]) -> Option<i64> {
+        let mut holds = Holds::default();
+        for (k, loss) in (0..).zip(losses) {
+            let start = Instant::from_micros(k * HOUR_US);
+            let hour = Hour {
+                train: TrainId::new("uf-1"),
+                start,
+                end: start.plus(HOUR_US),
+                steady: None,
+                start_resistance_1_m: Some(1.0 / (1.0 - loss / 100.0)),
+                start_half_width_1_m: None,
+                starts: 2,
+                end_tmp_max_pa: None,
+                samples: 50,
+                expected: 60,
+                filtration_s: 3600.0,
+                volume_m: 0.06,
+                mostly: Phase::Filtration,
+                quality: Quality::Good,
+                reasons: Vec::new(),
+            };
+            step(&mut holds, &hour, Some(1.0), &LIMITS);
+        }
+        holds[1].held.map(|h| h.micros() / HOUR_US)
+    }
+
+    #[test]
+    fn an_hour_within_the_deadband_neither_counts_nor_ends_a_hold() {
+        assert_eq!(held(&[31.0, 31.0, 31.0]), Some(3));
+        assert_eq!(held(&[31.0, 29.0, 31.0, 29.0, 28.5]), None);
+        assert_eq!(held(&[31.0, 29.0, 31.0, 29.0, 31.0]), Some(5));
+        assert_eq!(held(&[31.0, 31.0, 27.5, 31.0, 31.0]), None, "past the deadband: anew");
+        assert_eq!(held(&[31.0, 31.0, 31.0, 28.5]), Some(3), "held until past the deadband");
+        assert_eq!(held(&[31.0, 31.0, 31.0, 27.5]), None);
     }
 }

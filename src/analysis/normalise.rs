@@ -98,6 +98,9 @@ fn resistance(
     viscosity: &mut Viscosity,
 ) -> (f64, Option<Reason>) {
     let (flux, tmp, degc) = (samples.flux_m_s[i], samples.tmp_pa[i], samples.temperature_degc[i]);
+    if samples.frozen[i] {
+        return (f64::NAN, Some(Reason::Frozen));
+    }
     if flux.is_nan() {
         return (f64::NAN, Some(Reason::NoFlow));
     }
@@ -144,5 +147,8 @@ fn unsteady(samples: &Samples, span: &PhaseSpan, i: usize) -> Option<Reason> {
     held.sort_by(f64::total_cmp);
     let middle = held.get(n / 2).copied().unwrap_or(f64::NAN);
     let steady = n >= 2 && high <= middle * (1.0 + FLOW_BAND) && low >= middle * (1.0 - FLOW_BAND);
-    (!steady).then_some(Reason::UnsteadyFlow)
+    // The look back still reaches the rise of the flow: that is settling, not wandering.
+    let rising = span.began && now.since(span.from) < SETTLING_US + reach_us;
+    let why = if rising { Reason::JustStarted } else { Reason::UnsteadyFlow };
+    (!steady).then_some(why)
 }

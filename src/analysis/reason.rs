@@ -16,6 +16,8 @@ pub enum Reason {
     TemperatureOutOfRange,
     /// TMP below the floor under which it is not believed.
     TmpUnderFloor,
+    /// A reading of flow or pressure did not move through a backwash.
+    Frozen,
     /// Flow wandered by more than 5 %.
     UnsteadyFlow,
     /// Too soon after the start of filtration.
@@ -49,6 +51,7 @@ impl Reason {
             Self::NoTemperature => "no_temperature",
             Self::TemperatureOutOfRange => "temperature_out_of_range",
             Self::TmpUnderFloor => "tmp_under_floor",
+            Self::Frozen => "frozen",
             Self::UnsteadyFlow => "unsteady_flow",
             Self::JustStarted => "just_started",
             Self::UnknownState => "unknown_state",
@@ -64,12 +67,13 @@ impl Reason {
     }
 
     /// All reasons.
-    pub const ALL: [Self; 16] = [
+    pub const ALL: [Self; 17] = [
         Self::NoFlow,
         Self::NoPressure,
         Self::NoTemperature,
         Self::TemperatureOutOfRange,
         Self::TmpUnderFloor,
+        Self::Frozen,
         Self::UnsteadyFlow,
         Self::JustStarted,
         Self::UnknownState,

@@ -15,6 +15,7 @@ pub const fn reason_words(reason: Reason) -> &'static str {
             "The temperature read is outside the range for which the viscosity of water is known."
         }
         Reason::TmpUnderFloor => "TMP is below the floor under which it is not believed.",
+        Reason::Frozen => "A reading of flow or pressure did not move through a backwash.",
         Reason::UnsteadyFlow => "Flow wandered by more than 5 %.",
         Reason::JustStarted => "Filtration had only just started.",
         Reason::UnknownState => {

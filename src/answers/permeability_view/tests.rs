@@ -183,6 +183,7 @@ fn minutes_say_what_counted() {
         flux_m_s: vec![61.8 * LMH; n],
         tmp_pa: vec![33_560.0; n],
         temperature_degc: vec![11.3; n],
+        frozen: vec![false; n],
         every_us,
         unknown_codes: Default::default(),
     };

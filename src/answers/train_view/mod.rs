@@ -263,6 +263,12 @@ const fn suspects(reason: Reason) -> &'static [Role] {
         Reason::NoPressure | Reason::TmpUnderFloor => {
             &[Role::FeedPressure, Role::PermeatePressure, Role::TransmembranePressure]
         }
+        Reason::Frozen => &[
+            Role::PermeateFlow,
+            Role::FeedPressure,
+            Role::PermeatePressure,
+            Role::TransmembranePressure,
+        ],
         Reason::NoTemperature | Reason::TemperatureOutOfRange => &[Role::Temperature],
         Reason::UnknownState => &[Role::State],
         _ => &[],
