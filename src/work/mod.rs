@@ -183,7 +183,8 @@ impl<'a> Road<'a> {
         let mut starts: BTreeSet<Instant> = self.dirty.keys().copied().collect();
         let from = self.trains.iter().filter_map(|t| t.fold_from).min();
         if let Some(from) = from.filter(|_| !self.afresh) {
-            starts.extend(self.store.day_starts(&self.plant.id, from).await?);
+            let trains: Vec<&TrainId> = self.plant.trains.iter().map(|t| &t.id).collect();
+            starts.extend(self.store.day_starts(&self.plant.id, &trains, from).await?);
         }
         Ok(starts.into_iter().map(|s| self.plant.zone.day(s)).collect())
     }
