@@ -19,9 +19,11 @@ pub(super) const SET_ITEM: &str = "
     VALUES (?1, ?2, ?3, ?4, ?5, ?6, ?6, ?7, ?8)
     ON CONFLICT (plant, kind, item) DO UPDATE SET open = excluded.open, seq = excluded.seq,
         at_us = excluded.at_us, content = excluded.content";
+// A range of `open` is what item_open can be searched by: of all there ever was, few are open.
 pub(super) const LIST: &str = "
     SELECT content, first, at_us FROM item
-    WHERE plant = ?1 AND kind = ?2 AND (?3 IS NULL OR open = ?3) AND (?4 IS NULL OR train = ?4)
+    WHERE plant = ?1 AND kind = ?2 AND open BETWEEN coalesce(?3, 0) AND coalesce(?3, 1)
+        AND (?4 IS NULL OR train = ?4)
         AND (?5 IS NULL OR at_us >= ?5) AND (?6 IS NULL OR first < ?6)
     ORDER BY first DESC LIMIT ?7";
 pub(super) const ONE: &str =

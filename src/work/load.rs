@@ -5,7 +5,7 @@ use crate::base::{Instant, Span};
 use crate::plant::{Plant, Train};
 use crate::store::{Store, StoreError};
 
-use super::train::TrainWork;
+use super::train::{Past, TrainWork};
 
 /// What stands for a train, and the rows that answers about it need beside that.
 pub struct TrainState<'a> {
@@ -38,7 +38,7 @@ pub async fn train_state<'a>(
 ) -> Result<TrainState<'a>, StoreError> {
     let now = store.train_now(&plant.id, &train.id).await?;
     let newest = now.as_ref().map(|n| n.now.newest);
-    let mut work = TrainWork::load(store, plant, train, None, newest, false).await?;
+    let mut work = TrainWork::load(store, plant, train, None, newest, Past::Whole).await?;
     let far = Instant::from_micros(i64::MAX);
     let from = work.fold_from.unwrap_or(Instant::from_micros(i64::MIN));
     let day = store.days(&plant.id, &train.id, Span::new(from, far), 1).await?.pop();

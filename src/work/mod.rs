@@ -29,7 +29,7 @@ pub use worker::Worker;
 
 use clock::Clock;
 use decide::{Decisions, Instance};
-use train::TrainWork;
+use train::{Past, TrainWork};
 
 /// Runs are written anew from this long before the first day that was worked again: a clean and
 /// its joined steps lie within.
@@ -157,12 +157,13 @@ impl<'a> Road<'a> {
             dirty.entry(d.day_start).or_default().insert(d.train.clone());
         }
         let clock = Clock::new(store, plant, &newest).await?;
+        let past = if afresh { Past::Nothing } else { Past::Walk };
         let mut trains = Vec::with_capacity(plant.trains.len());
         for train in &plant.trains {
             let first =
                 dirty_days.iter().filter(|d| d.train == train.id).map(|d| d.day_start).min();
             let at = newest.get(&train.id).copied();
-            trains.push(TrainWork::load(store, plant, train, first, at, afresh).await?);
+            trains.push(TrainWork::load(store, plant, train, first, at, past).await?);
         }
         Ok(Self {
             store,
@@ -183,7 +184,8 @@ impl<'a> Road<'a> {
         let mut starts: BTreeSet<Instant> = self.dirty.keys().copied().collect();
         let from = self.trains.iter().filter_map(|t| t.fold_from).min();
         if let Some(from) = from.filter(|_| !self.afresh) {
-            starts.extend(self.store.day_starts(&self.plant.id, from).await?);
+            let trains: Vec<&TrainId> = self.plant.trains.iter().map(|t| &t.id).collect();
+            starts.extend(self.store.day_starts(&self.plant.id, &trains, from).await?);
         }
         Ok(starts.into_iter().map(|s| self.plant.zone.day(s)).collect())
     }
@@ -302,7 +304,9 @@ impl<'a> Road<'a> {
             if let Some(from) = train.fold_from {
                 let from = from.plus(-RUNS_BACK_US);
                 let id = &train.site.train.id;
-                self.changes.put_runs(id, from, &train.memory.runs).await?;
+                if train.runs_differ() {
+                    self.changes.put_runs(id, from, &train.memory.runs).await?;
+                }
             }
         }
         if let (Some(to), Some(_)) = (self.clock.stepped, &self.decisions) {

@@ -18,6 +18,20 @@ const TOLD_BACK_US: i64 = 400 * DAY_US;
 /// A clean that ended this long ago goes on no more.
 const ENDED_US: i64 = HOUR_US / 4;
 
+/// Standing looks at a day of hours before its own day; this is twice that.
+const STANDING_BACK_US: i64 = 2 * DAY_US;
+
+/// How much of the past to load.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Past {
+    /// None: everything is worked again.
+    Nothing,
+    /// What a walk will look at: little, while the open day is all there is to walk.
+    Walk,
+    /// All that is kept at hand.
+    Whole,
+}
+
 /// One train's state on the road.
 pub struct TrainWork<'a> {
     /// The train.
@@ -36,6 +50,7 @@ pub struct TrainWork<'a> {
     day: Option<Day>,
     newest: Option<Instant>,
     every_us: i64,
+    runs_stored: Vec<Run>,
 }
 
 impl<'a> TrainWork<'a> {
@@ -47,8 +62,9 @@ impl<'a> TrainWork<'a> {
         train: &'a Train,
         changed: Option<Instant>,
         newest: Option<Instant>,
-        afresh: bool,
+        past: Past,
     ) -> Result<Self, StoreError> {
+        let afresh = past == Past::Nothing;
         let since = if afresh { None } else { changed.into_iter().chain(newest).min() };
         let told = Told::load(store, plant, train, since).await?;
         let mut out = Self {
@@ -64,6 +80,7 @@ impl<'a> TrainWork<'a> {
             day: None,
             newest,
             every_us: analysis::every_us(plant, train),
+            runs_stored: Vec::new(),
         };
         if afresh {
             return Ok(out);
@@ -77,17 +94,20 @@ impl<'a> TrainWork<'a> {
             (None, n) => n.or(first_day(store, plant, train).await?),
         };
         if let Some(from) = out.fold_from {
-            out.remember(store, plant, from).await?;
+            let ends = out.is_over(plant.zone.day(from));
+            out.remember(store, plant, from, ends || past == Past::Whole).await?;
         }
         Ok(out)
     }
 
-    /// What stood at the beginning of the day that starts at `from`.
+    /// What stood at the beginning of the day that starts at `from`; `whole` with what it takes
+    /// to assess a day.
     async fn remember(
         &mut self,
         store: &Store,
         plant: &Plant,
         from: Instant,
+        whole: bool,
     ) -> Result<(), StoreError> {
         let (plant_id, train) = (plant.id.as_str(), &self.site.train.id);
         let kept = ASSESSMENTS_KEPT as u32;
@@ -95,16 +115,26 @@ impl<'a> TrainWork<'a> {
         let back = Span::new(from.plus(-PIECES_BACK_US), from);
         let kind = Some(Phase::CleanInPlace);
         self.pieces = store.phases(plant_id, train, back, kind).await?;
-        let back = Span::new(from.plus(-HOURS_KEPT_US), from);
-        self.memory.hours = store.hours(plant_id, train, back, u32::MAX).await?;
-        let runs = store.runs(plant_id, train, from).await?;
-        self.memory.runs = runs.iter().map(|r| analysis::as_known(r, from)).collect();
+        if !whole {
+            let back = Span::new(from.plus(-STANDING_BACK_US), from);
+            self.memory.hours = store.hours(plant_id, train, back, u32::MAX).await?;
+        }
+        if self.memory.hours.is_empty() {
+            let back = Span::new(from.plus(-HOURS_KEPT_US), from);
+            self.memory.hours = store.hours(plant_id, train, back, u32::MAX).await?;
+        }
+        self.runs_stored = store.runs(plant_id, train, Instant::from_micros(i64::MAX)).await?;
+        let begun = self.runs_stored.iter().filter(|r| r.start < from);
+        self.memory.runs = begun.map(|r| analysis::as_known(r, from)).collect();
         if let Some(last) = self.assessments.last() {
             self.memory.holds = last.holds;
             self.memory.run_days = last.run_days;
             if let Some(run) = self.memory.runs.last_mut() {
                 run.slope_1_m_per_m = last.trend.map(|t| t.slope_1_m_per_m);
             }
+        }
+        if !whole {
+            return Ok(());
         }
         let begin = self.memory.runs.last().map_or(Instant::from_micros(i64::MIN), |r| r.start);
         let days =
@@ -158,7 +188,7 @@ impl<'a> TrainWork<'a> {
         day: Span,
         changes: &mut Changes,
     ) -> Result<(), StoreError> {
-        let over = self.newest.is_some_and(|n| n.plus(self.every_us) >= day.to);
+        let over = self.is_over(day);
         let Some(row) = self.day.take().filter(|_| over) else { return Ok(()) };
         let cleans = analysis::cleans(&self.pieces, &self.recorded, day.to);
         let assessment = analysis::assess(plant, &self.site, &mut self.memory, &row, &cleans);
@@ -171,6 +201,16 @@ impl<'a> TrainWork<'a> {
             changes.put_assessment(a, &found).await?;
         }
         Ok(())
+    }
+
+    /// Whether all readings of a day are in.
+    fn is_over(&self, day: Span) -> bool {
+        self.newest.is_some_and(|n| n.plus(self.every_us) >= day.to)
+    }
+
+    /// Whether its runs are others than those stored.
+    pub fn runs_differ(&self) -> bool {
+        self.memory.runs != self.runs_stored
     }
 
     /// The last assessment.

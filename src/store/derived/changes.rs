@@ -4,7 +4,7 @@
 use sqlx::{Sqlite, Transaction};
 
 use super::{assessments, cycles, days, findings, hours, now, phases, runs};
-use crate::analysis::{Assessment, DayRows, Finding, Run};
+use crate::analysis::{Assessment, Cycle, DayRows, Finding, Run};
 use crate::base::{Instant, Span, TrainId};
 use crate::store::history::{self, Entry, ItemKind};
 use crate::store::{Act, Cleaning, DirtyDay, Store, StoreError, acts, cleanings, dirty, receipts};
@@ -78,29 +78,50 @@ impl Changes {
         } else {
             cycles::of_day(&mut self.tx, &self.plant, train, day).await?
         };
-        let differs = first_difference(&before, &rows.hours, |h| h.start)
-            .into_iter()
-            .chain(first_difference(&had, &rows.cycles, |c| c.start.max(day.from)));
-        let first = differs.min();
-        for clear in [hours::CLEAR, cycles::CLEAR, phases::CLEAR, now::CLEAR, days::CLEAR] {
-            sqlx::query(clear)
-                .bind(self.plant.as_str())
-                .bind(train.as_str())
-                .bind(day.from.micros())
-                .bind(day.to.micros())
-                .execute(&mut *self.tx)
-                .await?;
+        let hour = first_difference(&before, &rows.hours, |a, b| a == b, |h| h.start);
+        let cycle = first_difference(&had, &rows.cycles, same_cycle, |c| c.start);
+        // What stands before the first difference stays: an hourly post changes a day's end.
+        if let Some((same, from)) = hour {
+            self.clear(hours::CLEAR, train, Span::new(from, day.to), None).await?;
+            hours::put(&mut self.tx, &self.plant, rows.hours.get(same..).unwrap_or(&[])).await?;
         }
-        hours::put(&mut self.tx, &self.plant, &rows.hours).await?;
-        cycles::put(&mut self.tx, &self.plant, &rows.cycles).await?;
+        if let Some((same, from)) = cycle {
+            self.clear(cycles::CLEAR, train, day, Some(from)).await?;
+            cycles::put(&mut self.tx, &self.plant, rows.cycles.get(same..).unwrap_or(&[])).await?;
+        }
+        self.clear(phases::CLEAR, train, day, None).await?;
         phases::put(&mut self.tx, &self.plant, &rows.phases).await?;
-        if let Some(row) = &rows.day {
-            days::put(&mut self.tx, &self.plant, row).await?;
+        match &rows.day {
+            Some(row) => days::put(&mut self.tx, &self.plant, row).await?,
+            None => self.clear(days::CLEAR, train, day, None).await?,
         }
-        if let Some(n) = &rows.now {
-            now::put(&mut self.tx, &self.plant, day.from, n, &rows.unknown_codes).await?;
+        match &rows.now {
+            Some(n) => {
+                now::put(&mut self.tx, &self.plant, day.from, n, &rows.unknown_codes).await?;
+            }
+            None => self.clear(now::CLEAR, train, day, None).await?,
         }
-        Ok(first)
+        let first_of_cycle = cycle.map(|(_, from)| from.max(day.from));
+        Ok(hour.map(|(_, from)| from).into_iter().chain(first_of_cycle).min())
+    }
+
+    async fn clear(
+        &mut self,
+        statement: &'static str,
+        train: &TrainId,
+        span: Span,
+        from: Option<Instant>,
+    ) -> Result<(), StoreError> {
+        let mut query = sqlx::query(statement)
+            .bind(self.plant.as_str())
+            .bind(train.as_str())
+            .bind(span.from.micros())
+            .bind(span.to.micros());
+        if let Some(from) = from {
+            query = query.bind(from.micros());
+        }
+        query.execute(&mut *self.tx).await?;
+        Ok(())
     }
 
     /// Puts an assessment and the findings of its day in place of those there were.
@@ -201,12 +222,30 @@ impl Changes {
     }
 }
 
-/// The first moment at which two lists in order of time differ.
-fn first_difference<T: PartialEq>(
+/// How many rows two lists in order of time begin with alike, and the moment from which they
+/// differ; `None` where they do not.
+fn first_difference<T>(
     old: &[T],
     new: &[T],
+    alike: impl Fn(&T, &T) -> bool,
     time: impl Fn(&T) -> Instant,
-) -> Option<Instant> {
-    let same = old.iter().zip(new).take_while(|(a, b)| a == b).count();
-    old.get(same).map(&time).into_iter().chain(new.get(same).map(&time)).min()
+) -> Option<(usize, Instant)> {
+    let same = old.iter().zip(new).take_while(|(a, b)| alike(a, b)).count();
+    let from = old.get(same).map(&time).into_iter().chain(new.get(same).map(&time)).min()?;
+    Some((same, from))
+}
+
+/// Whether two cycles are the same row. What cannot be told is NaN, which is not itself, and
+/// NULL as stored, which is.
+fn same_cycle(a: &Cycle, b: &Cycle) -> bool {
+    let told = |c: &Cycle| {
+        let mut c = c.clone();
+        for value in [&mut c.flux_m_s, &mut c.temperature_degc] {
+            if value.is_nan() {
+                *value = f64::MAX;
+            }
+        }
+        c
+    };
+    a == b || told(a) == told(b)
 }

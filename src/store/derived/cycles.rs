@@ -15,7 +15,7 @@ pub(in crate::store) const OF_DAY: &str = "
     SELECT * FROM cycle WHERE plant = ?1 AND train = ?2 AND start_us >= ?3 - 172800000000
         AND start_us < ?4 AND decided_us >= ?3 AND decided_us < ?4 ORDER BY start_us";
 pub(in crate::store) const CLEAR: &str = "
-    DELETE FROM cycle WHERE plant = ?1 AND train = ?2 AND start_us >= ?3 - 172800000000
+    DELETE FROM cycle WHERE plant = ?1 AND train = ?2 AND start_us >= ?5
         AND start_us < ?4 AND decided_us >= ?3 AND decided_us < ?4";
 const INTO: &str =
     "INSERT OR REPLACE INTO cycle (plant, train, start_us, end_us, decided_us, volume_m,

@@ -4,7 +4,8 @@ use sqlx::SqliteConnection;
 
 use super::{at, reasons_of, reasons_text};
 use crate::analysis::{Day, Quality};
-use crate::base::{Span, TrainId};
+use crate::base::{Instant, Span, TrainId};
+use crate::store::dirty::to_json;
 use crate::store::{Store, StoreError};
 
 pub(in crate::store) const OF_TRAIN: &str = "
@@ -12,12 +13,14 @@ pub(in crate::store) const OF_TRAIN: &str = "
         SELECT * FROM day WHERE plant = ?1 AND train = ?2 AND start_us >= ?3 AND start_us < ?4
         ORDER BY start_us DESC LIMIT ?5
     ) ORDER BY start_us";
+// By train, because the key is: a bound on the start alone would read every day there is.
 pub(in crate::store) const STARTS: &str = "
-    SELECT DISTINCT start_us FROM day WHERE plant = ?1 AND start_us >= ?2 ORDER BY start_us";
+    SELECT DISTINCT d.start_us FROM json_each(?2) AS k CROSS JOIN day AS d
+    WHERE d.plant = ?1 AND d.train = k.value AND d.start_us >= ?3 ORDER BY d.start_us";
 pub(in crate::store) const CLEAR: &str =
     "DELETE FROM day WHERE plant = ?1 AND train = ?2 AND start_us >= ?3 AND start_us < ?4";
 pub(in crate::store) const PUT: &str =
-    "INSERT INTO day (plant, train, start_us, end_us, resistance_1_m,
+    "INSERT OR REPLACE INTO day (plant, train, start_us, end_us, resistance_1_m,
     half_width_1_m, start_hours, coarse, steady_resistance_1_m, flux_m_s, temperature_degc,
     end_tmp_max_pa, end_tmp_pa, laid_down_1_m, taken_off_1_m, volume_m, filtration_s, coverage,
     cycles, cycles_left_out, quality, reasons)
@@ -75,7 +78,7 @@ fn from_row(row: Row) -> Day {
     }
 }
 
-/// Adds a day that is not there.
+/// Puts a day in place of the one it was.
 pub(super) async fn put(
     conn: &mut SqliteConnection,
     plant: &str,
@@ -129,14 +132,17 @@ impl Store {
         Ok(rows.into_iter().map(from_row).collect())
     }
 
-    /// Starts of the plant days from a moment on that have rows of any train.
+    /// Starts of the plant days from a moment on that have rows of any of the trains.
     pub async fn day_starts(
         &self,
         plant: &str,
-        from: crate::base::Instant,
-    ) -> Result<Vec<crate::base::Instant>, StoreError> {
+        trains: &[&TrainId],
+        from: Instant,
+    ) -> Result<Vec<Instant>, StoreError> {
+        let trains: Vec<&str> = trains.iter().map(|t| t.as_str()).collect();
         let rows: Vec<i64> = sqlx::query_scalar(STARTS)
             .bind(plant)
+            .bind(to_json(&trains)?)
             .bind(from.micros())
             .fetch_all(&self.readers)
             .await?;

@@ -11,6 +11,8 @@ mod findings;
 mod hours;
 mod now;
 mod phases;
+#[cfg(test)]
+mod plans;
 mod runs;
 
 pub use changes::Changes;

@@ -13,7 +13,7 @@ pub(in crate::store) const NEWEST: &str = "
 pub(in crate::store) const CLEAR: &str =
     "DELETE FROM train_now WHERE plant = ?1 AND train = ?2 AND day_us >= ?3 AND day_us < ?4";
 pub(in crate::store) const PUT: &str = "
-    INSERT INTO train_now (plant, train, day_us, phase, since_us, newest_us, codes)
+    INSERT OR REPLACE INTO train_now (plant, train, day_us, phase, since_us, newest_us, codes)
     VALUES (?1, ?2, ?3, ?4, ?5, ?6, ?7)";
 
 /// What a train did at its newest reading, and state codes that nobody named.
@@ -25,7 +25,7 @@ pub struct StoredNow {
     pub unknown_codes: Vec<String>,
 }
 
-/// Adds the row of a day that is not there.
+/// Puts the row of a day in place of the one it had.
 pub(super) async fn put(
     conn: &mut SqliteConnection,
     plant: &str,
