@@ -2,6 +2,7 @@
 //! limit has held.
 
 use crate::analysis::{Evidence, FindingKind, LimitKind, Verdict};
+use crate::base::DAY_US;
 
 use super::{Action, Case, ClearsWhen, Proposal, steps, urgency};
 
@@ -29,7 +30,8 @@ pub fn propose(case: &Case) -> Option<Proposal> {
         .filter(|k| k.is_clean())
         .any(|k| standing.hold(k).held.is_some());
     let dates = standing.binding().map(|(_, d)| d);
-    let reach = if case.open.contains(&Action::CleanInPlace) { HOLD_ON } else { 1.0 };
+    let reach =
+        if case.open.iter().any(|(a, _)| *a == Action::CleanInPlace) { HOLD_ON } else { 1.0 };
     let horizon = now.plus((train.limits.planning_horizon_us as f64 * reach) as i64);
     let near = dates.and_then(|d| d.p10).is_some_and(|p10| p10 <= horizon);
     if !held && !near {
@@ -38,9 +40,14 @@ pub fn propose(case: &Case) -> Option<Proposal> {
     let clean_by = dates?;
     let start_by = clean_by.p10.map(|t| t.plus(-train.clean_duration_us - train.clean_notice_us));
     let (steps, steps_from) = steps::in_place(train);
+    let urgency = urgency::of_start(case.plant, now, start_by, held);
+    // Dates move by hours from day to day: what was urgent stays so until it is well clear.
+    let earlier = start_by.map(|t| t.plus(-DAY_US));
+    let clear = urgency::of_start(case.plant, now, earlier, held);
+    let before = case.open.iter().find(|(a, _)| *a == Action::CleanInPlace).map(|(_, u)| *u);
     Some(Proposal {
         action: Action::CleanInPlace,
-        urgency: urgency::of_start(case.plant, now, start_by, held),
+        urgency: before.map_or(urgency, |b| urgency.max(b.min(clear))),
         clean_by: Some(clean_by),
         start_by,
         evidence: evidence(case),
@@ -48,6 +55,12 @@ pub fn propose(case: &Case) -> Option<Proposal> {
         steps,
         steps_from,
     })
+}
+
+/// A clean that gave too little is told with the next one: was it done to procedure, warm enough
+/// and strong enough?
+fn poor_clean(e: &Evidence) -> bool {
+    matches!(e.verdict, Some(Verdict::NotRestored | Verdict::PartlyRestored))
 }
 
 fn evidence(case: &Case) -> Vec<Evidence> {
@@ -61,7 +74,7 @@ fn evidence(case: &Case) -> Vec<Evidence> {
                     | FindingKind::TmpHigh
                     | FindingKind::PermeabilityLimitAhead
                     | FindingKind::TmpLimitAhead
-            )
+            ) || poor_clean(e)
         })
         .cloned()
         .collect()

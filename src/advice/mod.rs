@@ -125,8 +125,8 @@ pub struct Case<'a> {
     pub standing: &'a Standing,
     /// What was found.
     pub findings: &'a [Finding],
-    /// Actions that are open for the train: a rule may hold on to what it proposed.
-    pub open: &'a [Action],
+    /// What is open for the train, and how urgent: a rule may hold on to what it proposed.
+    pub open: &'a [(Action, Urgency)],
 }
 
 type Rule = fn(&Case) -> Option<Proposal>;

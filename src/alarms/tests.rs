@@ -204,6 +204,7 @@ fn standing() -> Standing {
         in_clean: None,
         clean: None,
         earlier_verdicts: Vec::new(),
+        growth_from: None,
         troubles: Vec::new(),
     }
 }

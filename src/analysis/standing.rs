@@ -4,7 +4,7 @@ use crate::base::{DAY_US, Instant, MINUTE_US, TrainId};
 use crate::plant::Limits;
 
 use super::Site;
-use super::assess::Assessment;
+use super::assess::{Assessment, GrowthFrom};
 use super::cleans::{self, PhaseRow, RecordedClean};
 use super::forecast::Dates;
 use super::hours::Hour;
@@ -62,6 +62,8 @@ pub struct Standing {
     pub holds: Holds,
     /// Dates of the limits.
     pub dates: [Option<Dates>; 4],
+    /// Where the growth behind the dates comes from.
+    pub growth_from: Option<GrowthFrom>,
     /// Why there are none, where there are none.
     pub no_dates: Option<NoDates>,
     /// Whole days of the run at the last midnight.
@@ -170,6 +172,7 @@ pub fn standing(site: &Site, rows: &Rows, as_of: Instant) -> Standing {
         end_tmp_pa,
         holds,
         dates,
+        growth_from: rows.assessment.and_then(|a| a.growth_from).filter(|_| returned.is_none()),
         no_dates,
         run_days: if returned.is_some() { 0 } else { rows.assessment.map_or(0, |a| a.run_days) },
         assessed,

@@ -10,8 +10,10 @@ use crate::plant::StepClass;
 pub const fn response_words(response: Response) -> &'static str {
     match response {
         Response::PlanClean => {
-            "Look at the train's recommendation and its work order; plan the clean, or lower the \
-             flux until there is a window."
+            "Look at the train's recommendation and its work order, and plan the clean. Lowering \
+             the flux until there is a window is for the licensed operator to weigh: the other \
+             trains carry more, and clear-water level, demand and disinfection contact time \
+             have to hold."
         }
         Response::RestoreExports => {
             "Check the historian's export and the connection, and post what is missing; until then \

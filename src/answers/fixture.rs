@@ -137,6 +137,7 @@ pub fn standing(site: &Site) -> Standing {
         in_clean: None,
         clean: None,
         earlier_verdicts: Vec::new(),
+        growth_from: None,
         troubles: Vec::new(),
     }
 }

@@ -60,8 +60,8 @@ pub const fn caution_words(caution: Caution) -> &'static str {
              without the site's procedure."
         }
         Caution::ReturnToService => {
-            "Prove isolation before the clean, and send filtrate to waste afterwards until pH and \
-             residual pass."
+            "Prove isolation before the clean, neutralise before anything is drained, and send \
+             filtrate to waste afterwards until pH and residual pass."
         }
         Caution::IntegrityBeforeReturn => {
             "This train makes drinking water: test its integrity before it returns to service."

@@ -5,7 +5,7 @@ use super::time::{dates_words, day_words, duration_words, moment_words};
 use super::train_view::{TrainCase, reading, shown};
 use super::units::Units;
 use crate::advice::{Action, Recommendation};
-use crate::analysis::{Dates, LimitKind, NoDates, Standing, Verdict};
+use crate::analysis::{Dates, GrowthFrom, LimitKind, NoDates, Standing, Verdict};
 use crate::base::Instant;
 
 /// What is advised.
@@ -57,6 +57,11 @@ fn near(case: &TrainCase, standing: &Standing) -> bool {
 fn exceeded(standing: &Standing) -> Option<LimitKind> {
     let held = clean_kinds().find(|k| standing.hold(*k).held.is_some());
     held.or_else(|| clean_kinds().find(|k| standing.hold(*k).since.is_some()))
+}
+
+/// Whether a clean limit is past, and has not been for long enough to count.
+fn pending(standing: &Standing) -> bool {
+    exceeded(standing).is_some_and(|k| standing.hold(k).held.is_none())
 }
 
 /// What stands for a train, in plain words.
@@ -133,8 +138,9 @@ impl Told<'_> {
         let regained = run.regained_share().map_or_else(String::new, |share| {
             format!(", {} of the loss regained", self.units.share.text(share))
         });
+        let against = baseline_words(run.best?.kind);
         Some(format!(
-            "The clean that ended {} {what}: {best} of the best permeability after a clean{regained}.",
+            "The clean that ended {} {what}: {best} of {against}{regained}.",
             self.day(run.start)
         ))
     }
@@ -228,7 +234,14 @@ impl Told<'_> {
 
     fn ahead(&self, kind: LimitKind, dates: &Dates) -> String {
         let (zone, now) = (&self.case.plant.zone, self.standing.as_of);
-        format!("{} {}", self.limit_name(kind), dates_words(zone, dates, now, self.case.wall))
+        let borrowed = match self.standing.growth_from {
+            Some(GrowthFrom::EarlierRuns) => {
+                ", by the rate of earlier runs, for this one is too young to tell its own"
+            }
+            _ => "",
+        };
+        let dates = dates_words(zone, dates, now, self.case.wall);
+        format!("{} {dates}{borrowed}", self.limit_name(kind))
     }
 
     fn conclusion(&self, advice: &Advice) -> Option<String> {
@@ -251,6 +264,10 @@ impl Told<'_> {
             Some(t) if t > self.case.wall => {
                 format!("start the clean by {}{silent}", self.moment(t))
             }
+            // A limit that is past leaves no latest start to be blamed for.
+            Some(_) if exceeded(self.standing).is_some() => {
+                format!("clean it as soon as a window, the crew and the other trains allow{silent}")
+            }
             Some(t) => {
                 format!("start the clean now, the latest start was {}{silent}", self.moment(t))
             }
@@ -266,6 +283,10 @@ impl Told<'_> {
         match (advice, self.standing.no_dates) {
             // The first sentence says so already.
             (_, Some(NoDates::InClean)) => None,
+            (Advice::CannotAdvise, _) if pending(self.standing) => Some(
+                "Cannot advise yet: the limit counts once it has been past for the whole on-delay."
+                    .to_owned(),
+            ),
             (Advice::CannotAdvise, Some(why)) => {
                 Some(format!("Cannot advise: {}.", no_dates_words(why)))
             }

@@ -109,7 +109,7 @@ fn trains(plant: &Plant, states: &[TrainState], open: &[Recommendation]) -> Tabl
 fn start_words(zone: &Zone, standing: Option<&Standing>, first: Option<&Recommendation>) -> String {
     let start = first.and_then(|r| r.start_by);
     match (start, standing) {
-        (Some(t), Some(s)) if t <= s.as_of => "now".to_owned(),
+        (Some(t), Some(s)) if t <= s.as_of => "as soon as can be".to_owned(),
         (Some(t), _) => short(zone, t),
         (None, _) => String::new(),
     }
@@ -157,7 +157,7 @@ fn cleans(plant: &Plant, states: &[TrainState]) -> Table {
     for state in states {
         for run in &state.runs {
             let percent = |share: Option<f64>| {
-                share.map_or_else(String::new, |s| format!("{:.0} %", s * 100.0))
+                share.map_or_else(String::new, |s| format!("{:.1} %", s * 100.0))
             };
             table.add_row([
                 state.site.train.name.clone(),

@@ -4,7 +4,7 @@ use std::collections::BTreeMap;
 
 use serde::Serialize;
 
-use crate::advice::{self, Action, Case, Change, Recommendation};
+use crate::advice::{self, Action, Case, Change, Recommendation, Urgency};
 use crate::alarms::{self, Alarm, AlarmKind, Look, Scope, Turn};
 use crate::analysis::{self, DERIVATION_VERSION, Finding, Standing};
 use crate::base::{DAY_US, Instant, TrainId};
@@ -119,7 +119,8 @@ impl<'a> Decisions<'a> {
     ) -> Vec<(&'static str, Recommendation)> {
         let standing = look.standing;
         let known = self.recommendations.entry(standing.train.clone()).or_default();
-        let open: Vec<Action> = known.iter().filter(|r| r.is_open()).map(|r| r.action).collect();
+        let open: Vec<(Action, Urgency)> =
+            known.iter().filter(|r| r.is_open()).map(|r| (r.action, r.urgency)).collect();
         let site = &look.train.site;
         let case = Case { plant: self.plant, site, standing, findings, open: &open };
         let proposals = advice::propose(&case);

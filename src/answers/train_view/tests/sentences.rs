@@ -117,14 +117,14 @@ fn a_limit_that_has_held_asks_for_a_clean() {
         .with_clean("2026-03-06T21:00")
         .says(
             "clean_in_place",
-            &format!("{loss}: start the clean now, the latest start was Friday 6 March 21:00."),
+            &format!("{loss}: clean it as soon as a window, the crew and the other trains allow."),
         );
     // Past the limit but not for the on-delay, and nothing open yet.
     over().with(|h| h.hold(LimitKind::LossClean, "2026-03-07T22:00", None)).says(
         "cannot_advise",
         &format!(
-            "{loss}, not yet long enough to count. Cannot advise: no recommendation to clean is \
-             open; see whether it was declined."
+            "{loss}, not yet long enough to count. Cannot advise yet: the limit counts once it has \
+             been past for the whole on-delay."
         ),
     );
     Held::new()
@@ -139,8 +139,8 @@ fn a_limit_that_has_held_asks_for_a_clean() {
         .says(
             "clean_in_place",
             "Loss of permeability cannot be told without a baseline; TMP at the end of a cycle is \
-             18.13 psi; past the clean limit of TMP (17.4 psi) since Saturday 7 March 22:00: start \
-             the clean now, the latest start was Friday 6 March 21:00.",
+             18.13 psi; past the clean limit of TMP (17.4 psi) since Saturday 7 March 22:00: clean \
+             it as soon as a window, the crew and the other trains allow.",
         );
 }
 
