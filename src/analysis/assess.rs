@@ -95,6 +95,8 @@ pub struct Memory {
     pub hours: Vec<Hour>,
     /// How far the limits have come to counting.
     pub holds: Holds,
+    /// End of the last day that was assessed.
+    pub assessed: Option<Instant>,
 }
 
 /// Takes a day that has ended further, and says what stands at its end. The memory already
@@ -110,9 +112,12 @@ pub fn assess(
     let keep_from = day.end.plus(-HOURS_KEPT_US);
     let drop = memory.hours.partition_point(|h| h.start < keep_from);
     memory.hours.drain(..drop);
-    for clean in cleans.iter().filter(|c| ended_within(c, span)) {
+    // A clean may have ended on a day without readings.
+    let since = memory.assessed.unwrap_or(day.start);
+    for clean in cleans.iter().filter(|c| ended_within(c, Span::new(since, day.end))) {
         begin_run(site, memory, clean);
     }
+    memory.assessed = Some(day.end);
     let run_start = memory.runs.last().map(|r| r.start);
     let Memory { runs, hours: recent, .. } = memory;
     if let Some(run) = runs.last_mut() {

@@ -34,7 +34,7 @@ pub const fn response_words(response: Response) -> &'static str {
         Response::MakeSafe => {
             "Stop dosing, keep people away, ventilate, and follow the site's emergency procedure; \
              then prove by pH and free chlorine that the train, its tank and its sump are rinsed. If \
-             only the record is wrong, record it as it was."
+             only the record is wrong, acknowledge this and note the correction in the shift log: a record cannot be changed."
         }
     }
 }

@@ -3,7 +3,9 @@
 use std::path::PathBuf;
 use std::process::ExitCode;
 
-use super::Failure;
+use anyhow::anyhow;
+
+use super::{EX_CANTCREAT, Failure};
 use crate::store::Store;
 
 #[derive(clap::Args)]
@@ -18,13 +20,19 @@ pub struct Args {
 
 pub async fn run(args: &Args) -> Result<ExitCode, Failure> {
     let reading = super::read_plant(&args.plant)?;
+    if args.file.exists() {
+        return Err(Failure::new(
+            EX_CANTCREAT,
+            anyhow!("{} is there already; name a file that is not", args.file.display()),
+        ));
+    }
     let store = Store::open_beside(&reading.plant.service.database).await?;
     let bytes = store.backup(&args.file).await?;
     store.close().await;
-    println!(
-        "{} holds a copy of {:.1} MB, checked. Keep it with the plant file.",
+    super::say(&format!(
+        "{} holds a copy of {:.1} MB, checked. Keep it with the plant file.\n",
         args.file.display(),
         bytes as f64 / 1e6
-    );
+    ));
     Ok(ExitCode::SUCCESS)
 }

@@ -103,7 +103,7 @@ pub fn run(args: &Args) -> Result<ExitCode, Failure> {
     match args.output {
         Output::Json => {
             let text = serde_json::to_string_pretty(&checked).context("cannot write the result")?;
-            println!("{text}");
+            super::say(&format!("{text}\n"));
         }
         Output::Text => print(&checked, &reading, &args.plant),
     }
@@ -116,23 +116,29 @@ pub fn run(args: &Args) -> Result<ExitCode, Failure> {
 fn print(checked: &Checked, reading: &plant::Reading, path: &Path) {
     let text = std::fs::read_to_string(path).unwrap_or_default();
     for warning in &reading.warnings {
-        println!("{}\n", super::shown(warning, &text, path, false));
+        super::say(&format!("{}\n\n", super::shown(warning, &text, path, false)));
     }
-    println!("{} is in order. What it comes to, defaults marked with *:\n", path.display());
+    super::say(&format!(
+        "{} is in order. What it comes to, defaults marked with *:\n\n",
+        path.display()
+    ));
     for s in &checked.settings {
-        println!("  {} {} = {}", if s.default { "*" } else { " " }, s.key, s.value);
+        super::say(&format!("  {} {} = {}\n", if s.default { "*" } else { " " }, s.key, s.value));
     }
     for f in &checked.files {
-        println!("\n{}: {}", f.file, f.message);
+        super::say(&format!("\n{}: {}\n", f.file, f.message));
         for line in f.notes.iter().chain(f.rejections.iter().take(10)) {
-            println!("    {line}");
+            super::say(&format!("    {line}\n"));
         }
         let more = f.rejections.len().saturating_sub(10);
         if more > 0 {
-            println!("    and {more} more");
+            super::say(&format!("    and {more} more\n"));
         }
         if !f.unmapped_columns.is_empty() {
-            println!("    no train uses the columns {}", f.unmapped_columns.join(", "));
+            super::say(&format!(
+                "    no train uses the columns {}\n",
+                f.unmapped_columns.join(", ")
+            ));
         }
     }
 }

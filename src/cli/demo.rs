@@ -64,15 +64,15 @@ pub async fn run(args: Args) -> Result<ExitCode, Failure> {
         worked.train_days,
         watch.elapsed().as_secs_f64()
     );
-    print!("{}", super::told::told(&store, &plant, clock).await?);
+    super::say(&format!("{}", super::told::told(&store, &plant, clock).await?));
     let Some(listener) = listener else {
         store.close().await;
         return Ok(ExitCode::SUCCESS);
     };
-    println!(
-        "\nServing on http://{listen}/. Post the next hour with\n\n  curl --data-binary @{} 'http://{listen}/v1/exports?file=next-hour.csv'\n",
+    super::say(&format!(
+        "\nServing on http://{listen}/. Post the next hour with\n\n  curl --data-binary @{} 'http://{listen}/v1/exports?file=next-hour.csv'\n\n",
         dir.join("next-hour.csv").display()
-    );
+    ));
     super::logs::begin();
     super::serve::until_stopped(Worker::new(store, plant, clock), listener, &file).await
 }

@@ -123,19 +123,19 @@ fn print(plant: &Plant, receipts: &[Receipt], output: Output) -> Result<(), Fail
     match output {
         Output::Text => {
             for r in receipts {
-                println!("{}: {}", r.file, r.message);
+                super::say(&format!("{}: {}\n", r.file, r.message));
                 for note in &r.notes {
-                    println!("    {note}");
+                    super::say(&format!("    {note}\n"));
                 }
                 for rejection in r.rejections.iter().take(10) {
-                    println!(
-                        "    line {}, {}: `{}`: {}",
+                    super::say(&format!(
+                        "    line {}, {}: `{}`: {}\n",
                         rejection.line, rejection.column, rejection.value, rejection.reason
-                    );
+                    ));
                 }
                 let more = r.rejections_total.saturating_sub(10);
                 if more > 0 {
-                    println!("    and {more} more; the receipt {} lists them", r.id);
+                    super::say(&format!("    and {more} more; the receipt {} lists them\n", r.id));
                 }
             }
         }
@@ -143,7 +143,7 @@ fn print(plant: &Plant, receipts: &[Receipt], output: Output) -> Result<(), Fail
             let views: Vec<ReceiptView> =
                 receipts.iter().map(|r| receipt_view(&plant.zone, r)).collect();
             let text = serde_json::to_string_pretty(&views).context("cannot write the receipts")?;
-            println!("{text}");
+            super::say(&format!("{text}\n"));
         }
     }
     Ok(())

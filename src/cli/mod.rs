@@ -26,6 +26,7 @@ const EX_DATAERR: u8 = 65;
 const EX_NOINPUT: u8 = 66;
 const EX_UNAVAILABLE: u8 = 69;
 const EX_SOFTWARE: u8 = 70;
+const EX_CANTCREAT: u8 = 73;
 const EX_TEMPFAIL: u8 = 75;
 const EX_CONFIG: u8 = 78;
 
@@ -136,6 +137,12 @@ pub fn main() -> ExitCode {
             ExitCode::from(failure.code)
         }
     }
+}
+
+/// Prints a result. A reader that has seen enough is no failure.
+pub fn say(text: &str) {
+    use std::io::Write;
+    let _ = std::io::stdout().write_all(text.as_bytes());
 }
 
 /// Reads a plant file; prints all its mistakes if it has any.

@@ -19,6 +19,9 @@ pub async fn run(args: &Args) -> Result<ExitCode, Failure> {
     let cause = Cause { now: WallClock::default().now(), receipt: None };
     let worked = work::rebuild(&store, &reading.plant, &cause, &mut |_, _| {}).await?;
     store.close().await;
-    println!("{} train-days were worked again from their readings.", worked.train_days);
+    super::say(&format!(
+        "{} train-days were worked again from their readings.\n",
+        worked.train_days
+    ));
     Ok(ExitCode::SUCCESS)
 }

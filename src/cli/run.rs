@@ -5,7 +5,6 @@ use std::path::Path;
 use anyhow::Context;
 
 use super::Failure;
-use crate::analysis::DERIVATION_VERSION;
 use crate::plant::Plant;
 use crate::store::{PlantFile, Store};
 use crate::work::{self, Cause, WallClock};
@@ -15,7 +14,7 @@ use crate::work::{self, Cause, WallClock};
 pub async fn open_store(plant: &Plant, file: &Path) -> Result<Store, Failure> {
     let store = Store::open(&plant.service.database).await?;
     note_plant_file(&store, plant, file, WallClock::default()).await?;
-    if is_of_another(&store, plant).await? {
+    if work::is_of_another(&store, plant).await? {
         eprintln!("The plant file or the program has changed: every derived row is worked again.");
         let cause = Cause { now: WallClock::default().now(), receipt: None };
         work::rebuild(&store, plant, &cause, &mut |_, _| {}).await?;
@@ -40,12 +39,4 @@ pub async fn note_plant_file(
     };
     store.save_plant_file(&plant.id, &fact).await?;
     Ok(())
-}
-
-/// Whether the derived rows are of another plant file or version of the derivation.
-pub async fn is_of_another(store: &Store, plant: &Plant) -> Result<bool, Failure> {
-    let of = store.derivation(&plant.id).await?;
-    Ok(of.is_some_and(|(version, revision)| {
-        version != DERIVATION_VERSION || revision != plant.revision
-    }))
 }

@@ -15,7 +15,7 @@ use crate::api::{self, App};
 use crate::jobs;
 use crate::plant::Plant;
 use crate::store::Store;
-use crate::work::{WallClock, Worker};
+use crate::work::{self, WallClock, Worker};
 
 /// Requests under way get this long to end once a stop was asked for.
 const DRAIN: Duration = Duration::from_secs(30);
@@ -34,7 +34,7 @@ pub async fn run(args: &Args) -> Result<ExitCode, Failure> {
     let store = Store::open(&plant.service.database).await?;
     let clock = WallClock::default();
     super::run::note_plant_file(&store, &plant, &args.plant, clock).await?;
-    let anew = super::run::is_of_another(&store, &plant).await?;
+    let anew = work::is_of_another(&store, &plant).await?;
     let worker = Worker::new(store, plant, clock);
     if anew {
         rebuild_behind(&worker);
@@ -98,7 +98,10 @@ pub async fn until_stopped(
     }
     reload.abort();
     running.shutdown().await;
-    worker.store().clone().close().await;
+    // What a long write has not finished is undone and found again at the next start.
+    if tokio::time::timeout(DRAIN, worker.store().clone().close()).await.is_err() {
+        tracing::warn!("a write was still under way; it is undone");
+    }
     tracing::info!("stopped");
     Ok(ExitCode::SUCCESS)
 }
@@ -129,7 +132,7 @@ async fn take(worker: &Worker, plant: Plant, file: &Path) -> Result<(), Failure>
         tracing::warn!("service.listen changes on a restart only");
     }
     super::run::note_plant_file(worker.store(), &plant, file, worker.clock()).await?;
-    let anew = super::run::is_of_another(worker.store(), &plant).await?;
+    let anew = work::is_of_another(worker.store(), &plant).await?;
     worker.set_plant(plant);
     tracing::info!("the plant file was taken");
     if anew {

@@ -1,5 +1,6 @@
 //! What people may do to a work order, from where, and on what terms.
 
+use crate::analysis::Verdict;
 use crate::base::{Instant, Span, names_a_person};
 use crate::plant::Train;
 
@@ -171,11 +172,9 @@ fn start(
     if began > at {
         return Err(Refusal::new("/at", RefusalWhy::BadTimes));
     }
-    if next.started.is_none() {
-        // Between approval and start the train may have seen another chemical.
-        plan::check(&next.plain_steps(), context.train, context.last_chemical)?;
-        next.started = Some(began);
-    }
+    // Between approval and start, or while work waited, the train may have seen another chemical.
+    plan::check(&next.plain_steps(), context.train, context.last_chemical)?;
+    next.started = next.started.or(Some(began));
     Ok(())
 }
 
@@ -206,7 +205,8 @@ fn verify(
         integrity(next, test, at)?;
         next.integrity_test = Some(test.clone());
     }
-    if context.train.drinking_water && next.integrity_test.is_none() {
+    let doubtful = next.outcome.as_ref().is_some_and(|o| o.verdict == Verdict::Doubtful);
+    if (context.train.drinking_water || doubtful) && next.integrity_test.is_none() {
         return Err(Refusal::new("/integrity_test", RefusalWhy::IntegrityTestMissing));
     }
     Ok(())
@@ -218,7 +218,7 @@ fn integrity(order: &WorkOrder, test: &IntegrityTest, at: Instant) -> Result<(),
     if !names_a_person(&test.by) {
         return Err(Refusal::new(pointer("by"), RefusalWhy::NeedsPerson));
     }
-    if test.at > at || order.actuals.as_ref().is_some_and(|a| test.at < a.start) {
+    if test.at > at || order.actuals.as_ref().is_some_and(|a| test.at < a.end) {
         return Err(Refusal::new(pointer("at"), RefusalWhy::IntegrityTestMissing));
     }
     if !test.passed {

@@ -38,6 +38,15 @@ pub fn rinse_separates(rinse: &Step, before: StepClass, after: StepClass) -> boo
     let Some(check) = rinse.verified.as_ref().filter(|_| rinse.class == StepClass::Rinse) else {
         return false;
     };
+    // Nothing that a rinse reads here shows that these are gone.
+    if matches!(before, StepClass::Reductant | StepClass::Other) && before != after {
+        return false;
+    }
+    // A rinse with a chemical in it is none.
+    let named = rinse.chemical.as_deref().map(classes_by_name).unwrap_or_default();
+    if !named.is_empty() {
+        return false;
+    }
     let chlorine_counts =
         [before, after].iter().any(|c| matches!(c, StepClass::Hypochlorite | StepClass::Other));
     ph_passes(check) && (!chlorine_counts || chlorine_passes(check))
@@ -72,7 +81,7 @@ pub fn conflicts(steps: &[Step]) -> Vec<(usize, usize)> {
 
 /// The classes that a chemical's name gives away; none where it gives none.
 pub fn classes_by_name(chemical: &str) -> Vec<StepClass> {
-    let mut name = chemical.to_lowercase();
+    let mut name = format!(" {}", chemical.to_lowercase());
     // Called acids, and something else first.
     for (called, meant) in [
         ("hypochlorous acid", "hypochlor"),

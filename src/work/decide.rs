@@ -149,14 +149,15 @@ impl<'a> Decisions<'a> {
             .filter(|r| r.action == Action::CleanInPlace)
             .max_by_key(|r| (r.raised, r.is_open()));
         let assessed = standing.assessed.unwrap_or(Instant::from_micros(i64::MIN));
+        let last_chemical = look.train.last_chemical(standing.as_of);
         let look = OrderLook {
             train: look.train.site.train,
             orders: known,
             recommendation: newest,
             cleans: &look.train.ended_cleans(standing.as_of),
             runs: &look.train.runs_known(assessed),
-            named: look.train.named(),
-            last_chemical: look.train.last_chemical(),
+            named: &look.train.named(standing.as_of),
+            last_chemical: last_chemical.as_ref(),
             as_of: standing.as_of,
         };
         let mut number = self.next_number;

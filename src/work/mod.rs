@@ -66,12 +66,19 @@ pub async fn catch_up(
     cause: &Cause<'_>,
     progress: Progress<'_>,
 ) -> Result<Worked, StoreError> {
-    let dirty = store.dirty_days(&plant.id).await?;
-    let pending = store.pending_receipts(&plant.id).await?;
-    if dirty.is_empty() && pending.is_empty() {
+    let idle = store.dirty_days(&plant.id).await?.is_empty()
+        && store.pending_receipts(&plant.id).await?.is_empty();
+    if idle {
         return Ok(Worked::default());
     }
     let mut changes = store.begin_changes(&plant.id).await?;
+    if is_of_another(store, plant).await? {
+        // Rows of two plant files beside each other would be worse than late ones.
+        return rebuild_in(changes, store, plant, cause, progress).await;
+    }
+    // Read again now that nothing else can be written: what came meanwhile is worked too.
+    let dirty = store.dirty_days(&plant.id).await?;
+    let pending = store.pending_receipts(&plant.id).await?;
     let decisions = Decisions::load(store, plant, cause, &mut changes).await?;
     let mut road = Road::new(store, plant, changes, &dirty, false).await?;
     road.decisions = Some(decisions);
@@ -80,12 +87,35 @@ pub async fn catch_up(
     road.finish(&dirty, &pending).await
 }
 
-/// Works every derived row again from the facts. Writes no history, unless the plant file
-/// changed: then what is open is looked at once, at the newest instant.
+/// Whether the derived rows are of another plant file or version of the derivation.
+///
+/// # Errors
+/// If the store refuses.
+pub async fn is_of_another(store: &Store, plant: &Plant) -> Result<bool, StoreError> {
+    let of = store.derivation(&plant.id).await?;
+    Ok(of.is_some_and(|(version, revision)| {
+        version != DERIVATION_VERSION || revision != plant.revision
+    }))
+}
+
+/// Works every derived row again from the facts. Writes no history but for hours that had not
+/// been decided; where the plant file changed, what is open is looked at once, at the newest
+/// instant.
 ///
 /// # Errors
 /// If the store refuses; the old rows stand then.
 pub async fn rebuild(
+    store: &Store,
+    plant: &Plant,
+    cause: &Cause<'_>,
+    progress: Progress<'_>,
+) -> Result<Worked, StoreError> {
+    let changes = store.begin_changes(&plant.id).await?;
+    rebuild_in(changes, store, plant, cause, progress).await
+}
+
+async fn rebuild_in(
+    mut changes: Changes,
     store: &Store,
     plant: &Plant,
     cause: &Cause<'_>,
@@ -96,14 +126,13 @@ pub async fn rebuild(
     let done = store.dirty_days(&plant.id).await?;
     let pending = store.pending_receipts(&plant.id).await?;
     let all = every_day(store, plant).await?;
-    let mut changes = store.begin_changes(&plant.id).await?;
+    let decisions = Decisions::load(store, plant, cause, &mut changes).await?;
     changes.clear_derived().await?;
     let mut road = Road::new(store, plant, changes, &all, true).await?;
+    road.decisions = Some(decisions);
     road.walk(progress).await?;
     if of_another_file {
-        let decisions = Decisions::load(store, plant, cause, &mut road.changes).await?;
-        road.decisions = Some(decisions);
-        road.everything_changed();
+        road.told_late = plant.trains.iter().map(|t| t.id.clone()).collect();
         road.reconsider("plant_file_changed").await?;
     }
     road.finish(&done, &pending).await
@@ -139,6 +168,8 @@ struct Road<'a> {
     /// Stored rows are not looked at: everything is worked again.
     afresh: bool,
     worked: Worked,
+    /// Trains of which a fact of an earlier day was told: a clean, for one, changes no hour.
+    told_late: BTreeSet<TrainId>,
 }
 
 impl<'a> Road<'a> {
@@ -157,6 +188,9 @@ impl<'a> Road<'a> {
             dirty.entry(d.day_start).or_default().insert(d.train.clone());
         }
         let clock = Clock::new(store, plant, &newest).await?;
+        let today = clock.stepped_before.map(|t| plant.zone.day(t.plus(-1)).from);
+        let late = |d: &&DirtyDay| !afresh && today.is_some_and(|t| d.day_start < t);
+        let told_late = dirty_days.iter().filter(late).map(|d| d.train.clone()).collect();
         let past = if afresh { Past::Nothing } else { Past::Walk };
         let mut trains = Vec::with_capacity(plant.trains.len());
         for train in &plant.trains {
@@ -176,6 +210,7 @@ impl<'a> Road<'a> {
             viscosity: Viscosity::new(plant.temperature_law),
             afresh,
             worked: Worked::default(),
+            told_late,
         })
     }
 
@@ -277,8 +312,9 @@ impl<'a> Road<'a> {
             return Ok(());
         };
         for train in &self.trains {
-            let changed = self.worked.changed_from.get(&train.site.train.id);
-            if changed.is_some_and(|c| *c < before)
+            let id = &train.site.train.id;
+            let changed = self.worked.changed_from.get(id).is_some_and(|c| *c < before);
+            if (changed || self.told_late.contains(id))
                 && let Some(standing) = train.standing(self.plant, at)
             {
                 let look = Instance { train, standing: &standing, reason: Some(reason) };
@@ -286,13 +322,6 @@ impl<'a> Road<'a> {
             }
         }
         Ok(())
-    }
-
-    fn everything_changed(&mut self) {
-        let long_ago = Instant::from_micros(i64::MIN);
-        for train in &self.trains {
-            self.worked.changed_from.insert(train.site.train.id.clone(), long_ago);
-        }
     }
 
     async fn finish(

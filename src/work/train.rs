@@ -13,8 +13,10 @@ use crate::store::{Changes, Cleaning, CleaningFilter, Store, StoreError};
 pub const PIECES_BACK_US: i64 = 30 * DAY_US;
 /// Assessments kept at hand: decisions may lag behind by a few hours over a midnight.
 const ASSESSMENTS_KEPT: usize = 4;
-/// Recorded cleans are kept at hand this long.
-const TOLD_BACK_US: i64 = 400 * DAY_US;
+/// As many recorded cleans are kept at hand: a year of daily ones, and more.
+const TOLD_NEWEST: u32 = 500;
+/// Where a fact is told of a time further back than this, all of them are.
+const TOLD_BACK_US: i64 = 300 * DAY_US;
 /// A clean that ended this long ago goes on no more.
 const ENDED_US: i64 = HOUR_US / 4;
 
@@ -45,8 +47,7 @@ pub struct TrainWork<'a> {
     assessments: Vec<Assessment>,
     pieces: Vec<PhaseRow>,
     recorded: Vec<RecordedClean>,
-    named: Vec<Named>,
-    last_chemical: Option<LastChemical>,
+    told: Vec<Cleaning>,
     day: Option<Day>,
     newest: Option<Instant>,
     every_us: i64,
@@ -65,8 +66,8 @@ impl<'a> TrainWork<'a> {
         past: Past,
     ) -> Result<Self, StoreError> {
         let afresh = past == Past::Nothing;
-        let since = if afresh { None } else { changed.into_iter().chain(newest).min() };
-        let told = Told::load(store, plant, train, since).await?;
+        let old = changed.zip(newest).is_some_and(|(c, n)| n.since(c) > TOLD_BACK_US);
+        let told = told(store, plant, train, afresh || old).await?;
         let mut out = Self {
             site: Site::new(plant, train),
             tags: analysis::tags_needed(train).into_iter().collect(),
@@ -74,9 +75,8 @@ impl<'a> TrainWork<'a> {
             fold_from: changed,
             assessments: Vec::new(),
             pieces: Vec::new(),
-            recorded: told.recorded,
-            named: told.named,
-            last_chemical: told.last_chemical,
+            recorded: told.iter().map(recorded).collect(),
+            told,
             day: None,
             newest,
             every_us: analysis::every_us(plant, train),
@@ -128,6 +128,7 @@ impl<'a> TrainWork<'a> {
         self.memory.runs = begun.map(|r| analysis::as_known(r, from)).collect();
         if let Some(last) = self.assessments.last() {
             self.memory.holds = last.holds;
+            self.memory.assessed = Some(last.as_of);
             self.memory.run_days = last.run_days;
             if let Some(run) = self.memory.runs.last_mut() {
                 run.slope_1_m_per_m = last.trend.map(|t| t.slope_1_m_per_m);
@@ -231,14 +232,17 @@ impl<'a> TrainWork<'a> {
         begun.map(|r| analysis::as_known(r, at)).collect()
     }
 
-    /// Recorded cleans that name a work order.
-    pub fn named(&self) -> &[Named] {
-        &self.named
+    /// Recorded cleans that had ended by a moment and name a work order.
+    pub fn named(&self, at: Instant) -> Vec<Named> {
+        self.told.iter().filter(|c| c.span.to <= at).filter_map(named).collect()
     }
 
-    /// What the last recorded clean may have left in the train.
-    pub fn last_chemical(&self) -> Option<&LastChemical> {
-        self.last_chemical.as_ref()
+    /// What the recorded cleans that had ended by a moment may have left in the train.
+    pub fn last_chemical(&self, at: Instant) -> Option<LastChemical> {
+        let ended = self.told.iter().filter(|c| c.span.to <= at);
+        ended.fold(None, |left: Option<LastChemical>, c| {
+            LastChemical::left_by(&c.steps, left.as_ref(), c.span.to)
+        })
     }
 
     /// What the train mostly did in the last hour before a moment.
@@ -278,40 +282,21 @@ async fn first_day(
     Ok(first.first().map(|h| plant.zone.day(h.start).from))
 }
 
-/// What people recorded of a train's cleans.
-struct Told {
-    recorded: Vec<RecordedClean>,
-    named: Vec<Named>,
-    last_chemical: Option<LastChemical>,
-}
-
-impl Told {
-    /// Cleans from a year before `since` on: older ones speak through the runs they began.
-    async fn load(
-        store: &Store,
-        plant: &Plant,
-        train: &Train,
-        since: Option<Instant>,
-    ) -> Result<Self, StoreError> {
-        let far = Instant::from_micros(i64::MAX);
-        let filter = CleaningFilter {
-            train: Some(train.id.clone()),
-            span: since.map(|s| Span::new(s.plus(-TOLD_BACK_US), far)),
-            limit: u32::MAX,
-            ..Default::default()
-        };
-        let mut list = store.cleanings(&plant.id, &filter).await?;
-        list.sort_by_key(|c| (c.span.from, c.span.to));
-        let mut last_chemical = None;
-        for c in &list {
-            last_chemical = LastChemical::left_by(&c.steps, last_chemical.as_ref(), c.span.to);
-        }
-        Ok(Self {
-            recorded: list.iter().map(recorded).collect(),
-            named: list.iter().filter_map(named).collect(),
-            last_chemical,
-        })
-    }
+/// What people recorded of a train's cleans, in order of time: all, or the newest.
+async fn told(
+    store: &Store,
+    plant: &Plant,
+    train: &Train,
+    all: bool,
+) -> Result<Vec<Cleaning>, StoreError> {
+    let filter = CleaningFilter {
+        train: Some(train.id.clone()),
+        limit: if all { u32::MAX } else { TOLD_NEWEST },
+        ..Default::default()
+    };
+    let mut list = store.cleanings(&plant.id, &filter).await?;
+    list.sort_by_key(|c| (c.span.from, c.span.to));
+    Ok(list)
 }
 
 fn recorded(c: &Cleaning) -> RecordedClean {

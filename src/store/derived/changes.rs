@@ -79,7 +79,7 @@ impl Changes {
             cycles::of_day(&mut self.tx, &self.plant, train, day).await?
         };
         let hour = first_difference(&before, &rows.hours, |a, b| a == b, |h| h.start);
-        let cycle = first_difference(&had, &rows.cycles, same_cycle, |c| c.start);
+        let cycle = first_difference(&had, &rows.cycles, same_cycle, |c| c.decided);
         // What stands before the first difference stays: an hourly post changes a day's end.
         if let Some((same, from)) = hour {
             self.clear(hours::CLEAR, train, Span::new(from, day.to), None).await?;
