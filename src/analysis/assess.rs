@@ -8,7 +8,8 @@ use crate::science;
 use super::Site;
 use super::cleans::Clean;
 use super::days::Day;
-use super::forecast::{self, Dates, Growth};
+use super::forecast::{self, Dates};
+use super::growth::{Expected, Growth};
 use super::hours::Hour;
 use super::limits::{self, Holds, LimitKind};
 use super::runs::{self, Baseline, Run};
@@ -21,6 +22,8 @@ pub const HOURS_KEPT_US: i64 = 10 * DAY_US;
 /// A run too young for a trend of its own borrows the rate of the train's earlier runs, which
 /// differ from each other by about half (common practice, no source).
 const BORROWED_SPREAD: f64 = 0.5;
+/// A run's own trend is where the search for its rate begins, not what it must find.
+const OWN_SPREAD: f64 = 2.0;
 /// Water changes by about this much in a day, and does not wander further than this, K
 /// (common practice, no source).
 const TEMPERATURE_STEP_K: f64 = 0.35;
@@ -177,32 +180,28 @@ fn begin_run(site: &Site, memory: &mut Memory, clean: &Clean) {
     memory.holds = Holds::default();
 }
 
-/// Growth a day from the run's own trend, or from earlier runs.
+/// How the run grows: by its own days, from what its trend or earlier runs let expect.
 fn growth(memory: &Memory, trend: Option<&Trend>) -> (Option<Growth>, Option<GrowthFrom>) {
-    if let Some(t) = trend {
-        let growth = Growth {
-            level_1_m: t.level_1_m,
-            level_sd_1_m: t.level_sd_1_m,
-            per_day_1_m: t.slope_per_day(),
-            per_day_sd_1_m: t.slope_sd_1_m_per_m * t.volume_per_day_m,
-        };
-        return (Some(growth), Some(GrowthFrom::OwnTrend));
-    }
+    let Some(volume_m) = trend::volume_per_day(&memory.days) else { return (None, None) };
     let earlier: Vec<f64> =
         memory.runs.iter().rev().skip(1).take(3).filter_map(|r| r.slope_1_m_per_m).collect();
-    let borrowed = || -> Option<Growth> {
-        let slope = science::median(&earlier)?;
-        let values: Vec<f64> = memory.days.iter().filter_map(|d| d.resistance_1_m).collect();
-        let volume = trend::volume_per_day(&memory.days)?;
-        Some(Growth {
-            level_1_m: *values.last()?,
-            level_sd_1_m: memory.days.last()?.half_width_1_m.unwrap_or(0.0) / 1.96,
-            per_day_1_m: slope * volume,
-            per_day_sd_1_m: (slope * volume).abs() * BORROWED_SPREAD,
-        })
+    let (expected, from) = match (trend, science::median(&earlier)) {
+        (Some(t), _) => {
+            let per_day_1_m = t.slope_1_m_per_m * volume_m;
+            let own_sd = t.slope_sd_1_m_per_m * volume_m;
+            // The days are about to be looked at again: expect little of them.
+            let sd_1_m = libm::hypot(OWN_SPREAD * per_day_1_m, own_sd);
+            (Expected { per_day_1_m, sd_1_m }, GrowthFrom::OwnTrend)
+        }
+        (None, Some(slope)) => {
+            let per_day_1_m = slope * volume_m;
+            let sd_1_m = BORROWED_SPREAD * per_day_1_m.abs();
+            (Expected { per_day_1_m, sd_1_m }, GrowthFrom::EarlierRuns)
+        }
+        (None, None) => return (None, None),
     };
-    let growth = borrowed();
-    (growth, growth.map(|_| GrowthFrom::EarlierRuns))
+    let growth = Growth::follow(&memory.days, volume_m, expected);
+    (growth, growth.map(|_| from))
 }
 
 fn last_week(days: &[Day], of: impl Fn(&Day) -> Option<f64>) -> Option<f64> {

@@ -17,6 +17,7 @@ mod day_input;
 mod days;
 mod findings;
 mod forecast;
+mod growth;
 mod hours;
 mod limits;
 mod normalise;
@@ -36,7 +37,8 @@ pub use cycles::Cycle;
 pub use day_input::{Readings, Samples, every_us, samples, tags_needed};
 pub use days::Day;
 pub use findings::{Evidence, Finding, FindingKind, Measure, find};
-pub use forecast::{Dates, Growth};
+pub use forecast::Dates;
+pub use growth::Growth;
 pub use hours::{Hour, Steady, summarise};
 pub use limits::{Hold, Holds, LimitKind, loss};
 pub use normalise::{Normalised, Viscosity};
@@ -47,7 +49,7 @@ pub use standing::{Loss, NoDates, Rows, Standing, as_known, standing};
 pub use trend::Trend;
 
 /// Rises with every change that makes derived rows different: the store then works all again.
-pub const DERIVATION_VERSION: i64 = 1;
+pub const DERIVATION_VERSION: i64 = 2;
 
 /// A train with what its plant says of temperature.
 pub struct Site<'a> {
