@@ -97,11 +97,11 @@ impl Growth {
             return;
         }
         let row = self.doubt[0];
-        let gain = row.map(|d| d / expected);
-        for i in 0..3 {
-            self.state[i] += gain[i] * off;
-            for (j, d) in row.iter().enumerate() {
-                self.doubt[i][j] -= gain[i] * d;
+        for ((state, doubt), own) in self.state.iter_mut().zip(&mut self.doubt).zip(row) {
+            let gain = own / expected;
+            *state += gain * off;
+            for (d, r) in doubt.iter_mut().zip(row) {
+                *d -= gain * r;
             }
         }
     }
