@@ -1,11 +1,9 @@
 //! What everything of a plant file ended up as, for people: each setting in the units of the
 //! trade, marked where the file left it to the default.
 
-use super::model::{
-    Dated, Drive, Filtration, Layout, Limits, Loop, RepeatedHour, Signal, Source, Stamp,
-    TimeFormat, Train, Values,
-};
+use super::model::{Dated, Drive, Filtration, Limits, Loop, Signal, Train};
 use super::read::Reading;
+use super::source::{Layout, RepeatedHour, Source, Stamp, TimeFormat, Values};
 use crate::base::{DAY_US, HOUR_US, Instant, MINUTE_US, SECOND_US, Zone, unit_by_ucum};
 
 /// One setting.

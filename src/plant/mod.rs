@@ -11,6 +11,7 @@ mod model;
 mod not_yet;
 mod read;
 mod revision;
+mod source;
 #[cfg(test)]
 mod tests;
 mod words;
@@ -20,8 +21,9 @@ pub use effective::{Setting, effective};
 pub use membrane::{beyond, within};
 pub use mistake::Mistake;
 pub use model::{
-    Dated, Drive, Filtration, HoldLimit, IntegrityValues, Layout, Limits, Loop, MembraneLimits,
-    MonthTemperature, Phase, Plant, PressureKind, Procedure, RepeatedHour, Role, Service, Signal,
-    Source, Stamp, Step, StepClass, TimeColumn, TimeFormat, Train, Values, VerifiedRinse,
+    Dated, Drive, Filtration, HoldLimit, IntegrityValues, Limits, Loop, MembraneLimits,
+    MonthTemperature, Phase, Plant, PressureKind, Procedure, Role, Service, Signal, Step,
+    StepClass, Train, VerifiedRinse,
 };
 pub use read::{Reading, read, strength_mg_l};
+pub use source::{Layout, RepeatedHour, Source, Stamp, TimeColumn, TimeFormat, Values};

@@ -7,9 +7,9 @@ use std::path::Path;
 use sha2::{Digest, Sha256};
 
 use super::model::{
-    Dated, HoldLimit, Layout, Limits, Plant, Procedure, Signal, Source, Step, TimeFormat, Train,
-    Values, VerifiedRinse,
+    Dated, HoldLimit, Limits, Plant, Procedure, Signal, Step, Train, VerifiedRinse,
 };
+use super::source::{Layout, Source, TimeFormat, Values};
 
 /// Digest of all that the plant file says. The folder it lies in does not count.
 pub(super) fn revision(plant: &Plant, file_dir: &Path) -> String {

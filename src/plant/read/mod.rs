@@ -18,8 +18,9 @@ pub use procedure::strength_mg_l;
 pub(super) use walk::Value;
 
 use super::mistake::{Mistake, Report};
-use super::model::{MonthTemperature, Plant, Service, Source};
+use super::model::{MonthTemperature, Plant, Service};
 use super::revision::{mapping, revision};
+use super::source::Source;
 use crate::base::{Dimension, SourceId, Zone};
 use crate::science::TemperatureLaw;
 use limits::DEFAULT_LIMITS;
