@@ -12,6 +12,8 @@ mod hours;
 mod now;
 mod phases;
 mod runs;
+#[cfg(test)]
+pub(super) mod statements;
 
 pub use changes::Changes;
 pub use now::StoredNow;
