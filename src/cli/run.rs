@@ -38,5 +38,6 @@ pub async fn note_plant_file(
         seen: clock.now(),
     };
     store.save_plant_file(&plant.id, &fact).await?;
+    store.save_train_tags(plant).await?;
     Ok(())
 }

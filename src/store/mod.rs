@@ -22,6 +22,7 @@ mod receipts;
 mod revisions;
 #[cfg(test)]
 mod tests;
+mod train_tags;
 mod upkeep;
 
 use std::fs::{File, TryLockError};

@@ -1,6 +1,4 @@
-use std::time::{Duration, Instant as Clock};
-
-use washbell::base::{CellValue, Counts, Instant, MINUTE_US, Span, Tag, TrainId};
+use washbell::base::{CellValue, Counts, Span, Tag, TrainId};
 use washbell::store::{StoreError, StoredValue};
 
 use crate::{PLANT, at, column, days, deliver, given, merge, minutes, receipt, source, tag};
@@ -204,73 +202,4 @@ async fn what_no_chunk_can_hold_is_refused_with_its_tag() {
     let nan = column(&[(0, Number(f64::NAN))], &[]);
     let refused = intake.merge(&[(source, name, nan)], "r").await;
     assert!(matches!(refused, Err(StoreError::Chunk { tag, .. }) if tag == "PT-1"));
-}
-
-/// Not a test of time: prints what a plant-year costs.
-/// `cargo test --release --test store -- --ignored --nocapture`.
-#[tokio::test]
-#[ignore = "a measurement"]
-async fn measure_a_plant_year() {
-    let given = given().await;
-    let (tags, year) = (48, 366);
-    let days: Vec<Vec<_>> = (0..tags)
-        .map(|t| (0..year).map(|d| minutes(d * 1440, (d + 1) * 1440, t)).collect())
-        .collect();
-    let names: Vec<Tag> = (0..tags).map(|t| Tag::new(&format!("PT-{t}"))).collect();
-    for round in ["new", "repeated"] {
-        let receipt = receipt(round);
-        let mut spent = Duration::ZERO;
-        let mut intake = given.store.begin_intake(PLANT).await.unwrap();
-        let mut total = Counts::default();
-        for day in 0..year as usize {
-            let block: Vec<_> = names
-                .iter()
-                .zip(&days)
-                .map(|(name, columns)| (source(), name.clone(), columns[day].clone()))
-                .collect();
-            let started = Clock::now();
-            for outcome in intake.merge(&block, &receipt.id).await.unwrap() {
-                total.add(&outcome.counts);
-            }
-            spent += started.elapsed();
-        }
-        let started = Clock::now();
-        intake.commit(&receipt, "m1").await.unwrap();
-        spent += started.elapsed();
-        println!("{round}: {spent:?} for {} readings", total.cells());
-    }
-    let bytes = given.store.bytes().await.unwrap();
-    println!("{bytes} bytes, {:.2} a reading", bytes as f64 / (tags * year * 1440) as f64);
-
-    let mut posts = Vec::new();
-    for hour in 0..100 {
-        let from = year * 1440 + hour * 60;
-        let block: Vec<_> = (0..tags)
-            .zip(&names)
-            .map(|(t, name)| (source(), name.clone(), minutes(from, from + 60, t)))
-            .collect();
-        let receipt = receipt(&format!("post {hour}"));
-        let started = Clock::now();
-        let mut intake = given.store.begin_intake(PLANT).await.unwrap();
-        intake.merge(&block, &receipt.id).await.unwrap();
-        intake.commit(&receipt, "m1").await.unwrap();
-        posts.push(started.elapsed());
-    }
-    posts.sort();
-    println!("hourly post of {tags} tags: median {:?}, worst {:?}", posts[50], posts[99]);
-
-    let asked: Vec<_> = names.iter().take(6).map(|n| (source(), n.clone())).collect();
-    let whole = Span::new(Instant::from_micros(crate::START_US), at(year * 1440));
-    let day = Span::new(at((year - 1) * 1440), at(year * 1440));
-    for (what, span) in [("year", whole), ("day", day)] {
-        let started = Clock::now();
-        let read = given.store.readings(PLANT, &asked, span).await.unwrap();
-        let n: usize = read.iter().map(washbell::base::Column::len).sum();
-        println!("{what} of 6 tags: {n} readings in {:?}", started.elapsed());
-        assert_eq!(n as i64, 6 * span.length_us() / MINUTE_US);
-    }
-    let started = Clock::now();
-    given.store.newest_reading(PLANT, &source()).await.unwrap();
-    println!("newest of a source: {:?}", started.elapsed());
-    crate::views::measure_a_day(&given).await;
 }

@@ -2,6 +2,7 @@
 
 mod facts;
 mod intake;
+mod minute;
 mod upkeep;
 mod views;
 

@@ -7,7 +7,8 @@ use washbell::base::{CellValue, Column, DAY_US, SECOND_US};
 use crate::{Given, PLANT, START_US, at, column, deliver, given, minutes};
 use CellValue::{Bad, Number, Word};
 
-async fn shell(given: &Given) -> SqlitePool {
+/// A backup, opened as somebody with a shell would.
+pub async fn shell(given: &Given) -> SqlitePool {
     let copy = given.folder.path().join("copy.db");
     given.store.backup(&copy).await.unwrap();
     SqlitePool::connect_with(SqliteConnectOptions::new().filename(copy)).await.unwrap()
@@ -38,17 +39,6 @@ async fn check(given: &Given, tag: &str, want: &Column) {
         })
         .collect();
     assert_eq!(got, want, "{tag}");
-}
-
-/// Prints what a tag's day costs by the view.
-pub async fn measure_a_day(given: &Given) {
-    let shell = shell(given).await;
-    for (what, day) in [("first", START_US / DAY_US), ("second", START_US / DAY_US + 1)] {
-        let started = std::time::Instant::now();
-        let query = sqlx::query(OF_DAY).bind(PLANT).bind("PT-1").bind(day);
-        let n = query.fetch_all(&shell).await.unwrap().len();
-        println!("{what} day by the view: {n} readings in {:?}", started.elapsed());
-    }
 }
 
 #[tokio::test]

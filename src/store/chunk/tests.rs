@@ -1,5 +1,3 @@
-use std::time::Instant as Clock;
-
 use proptest::prelude::*;
 
 use super::*;
@@ -139,29 +137,4 @@ proptest! {
         let _ = decode(std::str::from_utf8(&bytes).unwrap());
         let _ = decode(std::str::from_utf8(&bytes[..at.min(bytes.len())]).unwrap());
     }
-}
-
-/// Not a test of time: prints what a day of minutes costs. `cargo test --release -- --ignored`.
-#[test]
-#[ignore = "a measurement"]
-fn measure_a_day_of_minutes() {
-    let mut values = Vec::new();
-    for i in 0..1440i64 {
-        values.push(Number((3120 + (i * 7919) % 41 - i / 9) as f64 / 1000.0));
-    }
-    let column = grid(&values, &[]);
-    let text = encode(&column).unwrap();
-    let rounds = 2000;
-    let started = Clock::now();
-    let mut bytes = 0;
-    for _ in 0..rounds {
-        bytes += encode(std::hint::black_box(&column)).unwrap().len();
-    }
-    let encoded = started.elapsed();
-    let started = Clock::now();
-    for _ in 0..rounds {
-        bytes += decode(std::hint::black_box(&text)).unwrap().len();
-    }
-    let decoded = started.elapsed();
-    println!("encode {:?}, decode {:?} a day; {bytes}", encoded / rounds, decoded / rounds);
 }

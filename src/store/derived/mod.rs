@@ -14,6 +14,8 @@ mod phases;
 #[cfg(test)]
 mod plans;
 mod runs;
+#[cfg(test)]
+pub(super) mod statements;
 
 pub use changes::Changes;
 pub use now::StoredNow;
