@@ -311,7 +311,7 @@ fn says(line: &str, word: &str) -> bool {
         let before = line[..at].chars().next_back().is_some_and(is_word);
         let after = line[at + word.len()..].chars().next().is_some_and(is_word);
         let ends = word.ends_with(is_word);
-        !before && !(after && ends)
+        !(before || after && ends)
     })
 }
 

@@ -64,7 +64,7 @@ pub async fn run(args: Args) -> Result<ExitCode, Failure> {
         worked.train_days,
         watch.elapsed().as_secs_f64()
     );
-    super::say(&format!("{}", super::told::told(&store, &plant, clock).await?));
+    super::say(&super::told::told(&store, &plant, clock).await?);
     let Some(listener) = listener else {
         store.close().await;
         return Ok(ExitCode::SUCCESS);

@@ -259,8 +259,8 @@ impl Runner {
         };
         let standing = analysis::standing(&line.site, &rows, span.to);
         let findings = analysis::find(&line.site, &standing);
-        let open: Vec<Action> =
-            line.known.iter().filter(|r| r.is_open()).map(|r| r.action).collect();
+        let open: Vec<(Action, Urgency)> =
+            line.known.iter().filter(|r| r.is_open()).map(|r| (r.action, r.urgency)).collect();
         let case = Case {
             plant: self.plant,
             site: &line.site,
