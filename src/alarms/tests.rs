@@ -40,9 +40,9 @@ fn in_state(state: AlarmState) -> Alarm {
     let withheld = |c: &mut Condition, w| c.withheld = Some(w);
     match state {
         Unacknowledged => raised,
-        Acknowledged => acknowledge(&raised, "Kim", at(2)).unwrap(),
+        Acknowledged => acknowledge(&raised, "shift A", at(2)).unwrap(),
         ReturnedUnacknowledged => run(&[raised], &[], 2).remove(0).alarm,
-        Shelved => shelve(&raised, "Kim", at(10), "clean is booked", at(2)).unwrap(),
+        Shelved => shelve(&raised, "shift A", at(10), "clean is booked", at(2)).unwrap(),
         SuppressedByDesign => {
             withheld(&mut quiet, Withheld::InClean);
             run(&[raised], &[quiet], 2).remove(0).alarm
@@ -52,7 +52,7 @@ fn in_state(state: AlarmState) -> Alarm {
             run(&[raised], &[quiet], 2).remove(0).alarm
         }
         Normal => {
-            let known = acknowledge(&raised, "Kim", at(2)).unwrap();
+            let known = acknowledge(&raised, "shift A", at(2)).unwrap();
             run(&[known], &[], 2).remove(0).alarm
         }
     }
@@ -114,9 +114,9 @@ fn every_state_meets_every_act() {
     assert_eq!(table.len(), AlarmState::ALL.len());
     for (from, acknowledged, shelved) in table {
         let alarm = in_state(from);
-        let told = acknowledge(&alarm, "Sam", at(3));
+        let told = acknowledge(&alarm, "shift B", at(3));
         assert_eq!(told.as_ref().map(|a| a.state).ok(), acknowledged, "acknowledge {from:?}");
-        let silent = shelve(&alarm, "Sam", at(12), "booked", at(3));
+        let silent = shelve(&alarm, "shift B", at(12), "booked", at(3));
         assert_eq!(silent.as_ref().map(|a| a.state).ok(), shelved, "shelve {from:?}");
         let allowed = acts_allowed(&alarm);
         assert_eq!(allowed.contains(&AlarmActKind::Acknowledge), acknowledged.is_some());
@@ -127,7 +127,7 @@ fn every_state_meets_every_act() {
         }
     }
     let known = in_state(Acknowledged);
-    assert_eq!(acknowledge(&known, "Kim", at(9)).unwrap(), known, "said twice");
+    assert_eq!(acknowledge(&known, "shift A", at(9)).unwrap(), known, "said twice");
 }
 
 #[test]
@@ -136,16 +136,16 @@ fn a_shelf_wants_a_person_a_reason_and_an_end_within_a_day() {
     let cases = [
         ("", at(5), "why", AlarmRefused::NeedsPerson),
         ("washbell", at(5), "why", AlarmRefused::NeedsPerson),
-        ("Kim", at(5), " ", AlarmRefused::NeedsReason),
-        ("Kim", at(2), "why", AlarmRefused::UntilOutOfReach),
-        ("Kim", at(27), "why", AlarmRefused::UntilOutOfReach),
+        ("shift A", at(5), " ", AlarmRefused::NeedsReason),
+        ("shift A", at(2), "why", AlarmRefused::UntilOutOfReach),
+        ("shift A", at(27), "why", AlarmRefused::UntilOutOfReach),
     ];
     for (by, until, reason, refused) in cases {
         assert_eq!(shelve(&alarm, by, until, reason, at(2)), Err(refused));
     }
-    assert!(shelve(&alarm, "Kim", at(26), "why", at(2)).is_ok());
+    assert!(shelve(&alarm, "shift A", at(26), "why", at(2)).is_ok());
     let integrity = run(&[], &[condition(AlarmKind::Integrity)], 1).remove(0).alarm;
-    let refused = shelve(&integrity, "Kim", at(5), "why", at(2));
+    let refused = shelve(&integrity, "shift A", at(5), "why", at(2));
     assert_eq!(refused, Err(AlarmRefused::NeverShelved));
 }
 
@@ -326,14 +326,14 @@ proptest! {
                 Happens::Hours(h) => hour += h,
                 Happens::Acknowledge(k) => {
                     if let Some(a) = alarms.get_mut(k)
-                        && let Ok(next) = acknowledge(a, "Kim", at(hour))
+                        && let Ok(next) = acknowledge(a, "shift A", at(hour))
                     {
                         *a = next;
                     }
                 }
                 Happens::Shelve(k, hours) => {
                     if let Some(a) = alarms.get_mut(k)
-                        && let Ok(next) = shelve(a, "Kim", at(hour + hours), "why", at(hour))
+                        && let Ok(next) = shelve(a, "shift A", at(hour + hours), "why", at(hour))
                     {
                         prop_assert!(hours > 0 && hours <= 24);
                         *a = next;

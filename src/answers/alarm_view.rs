@@ -161,7 +161,7 @@ mod tests {
         shelved.shelved_until = Some(at("2026-03-08T14:00"));
         shelved.acts.push(AlarmAct {
             what: AlarmActKind::Shelve,
-            by: "Kim".to_owned(),
+            by: "shift A".to_owned(),
             at: at("2026-03-08T07:30"),
             until: Some(at("2026-03-08T14:00")),
             reason: Some("record being corrected".to_owned()),
@@ -179,10 +179,10 @@ mod tests {
                 "response": "Stop dosing, keep people away, ventilate, and follow the site's \
                              emergency procedure; then prove by pH and free chlorine that the \
                              train, its tank and its sump are rinsed. If only the record is wrong, \
-                             record it as it was.",
+                             acknowledge this and note the correction in the shift log: a record cannot be changed.",
                 "raised": "2026-03-08T06:00:00+00:00", "as_of": "2026-03-08T07:00:00+00:00",
                 "returned": null, "shelved_until": "2026-03-08T14:00:00+00:00", "evidence": [],
-                "acts": [{"act": "shelve", "by": "Kim", "at": "2026-03-08T07:30:00+00:00",
+                "acts": [{"act": "shelve", "by": "shift A", "at": "2026-03-08T07:30:00+00:00",
                           "until": "2026-03-08T14:00:00+00:00",
                           "reason": "record being corrected"}],
                 "actions": ["shelve"]

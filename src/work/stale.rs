@@ -92,11 +92,11 @@ mod tests {
         assert_eq!((alarm.source.as_ref(), alarm.raised), (Some(&a), at(14)));
         let known = std::slice::from_ref(&alarm);
         assert!(look(known, 10, 15).is_empty(), "said once");
-        let silent = shelve(&alarm, "Kim", at(20), "export being repaired", at(15)).unwrap();
+        let silent = shelve(&alarm, "shift A", at(20), "export being repaired", at(15)).unwrap();
         assert!(look(std::slice::from_ref(&silent), 10, 19).is_empty());
         let sounds = look(std::slice::from_ref(&silent), 10, 20);
         assert_eq!(sounds[0].alarm.state, AlarmState::Unacknowledged);
-        let told = acknowledge(&alarm, "Kim", at(15)).unwrap();
+        let told = acknowledge(&alarm, "shift A", at(15)).unwrap();
         let over = look(std::slice::from_ref(&told), 15, 16);
         assert_eq!(over[0].alarm.state, AlarmState::Normal);
     }

@@ -37,21 +37,21 @@ async fn what_met_raises_an_alarm_and_a_clean_after_it_ends_it() {
 
     let path = format!("/v1/alarms/{}", alarm["id"].as_str().unwrap());
     let acknowledge = format!("{path}/acknowledge");
-    let known = done(&app, &acknowledge, &json!({"by": "Kim"}), 200).await;
+    let known = done(&app, &acknowledge, &json!({"by": "shift A"}), 200).await;
     assert_eq!(known["state"], "acknowledged");
-    assert_eq!(done(&app, &acknowledge, &json!({"by": "Kim"}), 200).await, known);
-    no(&app, &acknowledge, &json!({"by": "Sam"}), 409).await;
+    assert_eq!(done(&app, &acknowledge, &json!({"by": "shift A"}), 200).await, known);
+    no(&app, &acknowledge, &json!({"by": "shift B"}), 409).await;
     let shelve = format!("{path}/shelve");
     let until = "2026-03-14T06:00:00+00:00";
     for (body, pointer) in [
-        (json!({"by": "Kim", "until": until, "reason": " "}), "/reason"),
-        (json!({"by": "Kim", "until": "2026-03-20T06:00:00Z", "reason": "x"}), "/until"),
-        (json!({"by": "Kim", "until": "tomorrow", "reason": "x"}), "/until"),
+        (json!({"by": "shift A", "until": until, "reason": " "}), "/reason"),
+        (json!({"by": "shift A", "until": "2026-03-20T06:00:00Z", "reason": "x"}), "/until"),
+        (json!({"by": "shift A", "until": "tomorrow", "reason": "x"}), "/until"),
         (json!({"by": " ", "until": until, "reason": "x"}), "/by"),
     ] {
         assert_eq!(no(&app, &shelve, &body, 422).await.1, pointer, "{body}");
     }
-    let silent = json!({"by": "Kim", "until": until, "reason": "record being looked at"});
+    let silent = json!({"by": "shift A", "until": until, "reason": "record being looked at"});
     let shelved = done(&app, &shelve, &silent, 200).await;
     assert_eq!((&shelved["state"], &shelved["shelved_until"]), (&json!("shelved"), &json!(until)));
     assert_eq!(items(&app, "/v1/alarms?state=shelved").await, [shelved]);

@@ -34,7 +34,7 @@ async fn a_browser_that_asks_for_a_page_gets_one() {
     assert_eq!(index.status, 200);
     assert!(index.text.contains("<a href=\"/v1/trains/uf-1\">"), "{}", index.text);
     let plain = app.get("/").await;
-    assert!(plain.text.contains("\nuf-2 (as of 2026-03-14T00:00:00+00:00): "), "{}", plain.text);
+    assert!(plain.text.contains("\nuf-2 (as of 2026-03-13T23:59:00+00:00): "), "{}", plain.text);
 }
 
 #[tokio::test(flavor = "multi_thread")]

@@ -17,37 +17,37 @@ async fn a_recommendation_is_accepted_deferred_and_declined() {
     assert_eq!(app.get_json(&order).await["recommendation"], due["id"]);
 
     let accept = format!("{path}/accept");
-    let accepted = done(&app, &accept, &json!({"by": "Kim"}), 200).await;
+    let accepted = done(&app, &accept, &json!({"by": "shift A"}), 200).await;
     assert_eq!(
         (&accepted["state"], accepted["decisions"].as_array().unwrap().len()),
         (&json!("open"), 1)
     );
-    assert_eq!(done(&app, &accept, &json!({"by": "Kim"}), 200).await, accepted);
+    assert_eq!(done(&app, &accept, &json!({"by": "shift A"}), 200).await, accepted);
     assert_eq!(app.get_json(&order).await["state"], "draft", "accepting approves nothing");
 
     let defer = format!("{path}/defer");
     let until = "2026-03-16T06:00:00+00:00";
     for (body, pointer) in [
-        (json!({"by": "Kim", "reason": "no crew"}), "/until"),
-        (json!({"by": "Kim", "reason": "no crew", "until": "2026-03-01T00:00:00Z"}), "/until"),
-        (json!({"by": "Kim", "until": until}), "/reason"),
+        (json!({"by": "shift A", "reason": "no crew"}), "/until"),
+        (json!({"by": "shift A", "reason": "no crew", "until": "2026-03-01T00:00:00Z"}), "/until"),
+        (json!({"by": "shift A", "until": until}), "/reason"),
         (json!({"by": "washbell", "reason": "no crew", "until": until}), "/by"),
     ] {
         assert_eq!(no(&app, &defer, &body, 422).await.1, pointer, "{body}");
     }
-    let body = json!({"by": "Kim", "reason": "no crew", "until": until});
+    let body = json!({"by": "shift A", "reason": "no crew", "until": until});
     let deferred = done(&app, &defer, &body, 200).await;
     assert_eq!((&deferred["state"], &deferred["silent_until"]), (&json!("open"), &json!(until)));
 
     let decline = format!("{path}/decline");
-    let body = json!({"by": "Sam", "reason": "membranes are replaced next week"});
+    let body = json!({"by": "shift B", "reason": "membranes are replaced next week"});
     let declined = done(&app, &decline, &body, 200).await;
     assert_eq!(
         (&declined["state"], &declined["closed"]["why"]),
         (&json!("closed"), &json!("declined"))
     );
     assert_eq!(done(&app, &decline, &body, 200).await, declined);
-    no(&app, &accept, &json!({"by": "Kim"}), 409).await;
+    no(&app, &accept, &json!({"by": "shift A"}), 409).await;
     let order = app.get_json(&order).await;
     assert_eq!(
         (&order["state"], &order["cancelled"]["why"]),

@@ -70,7 +70,7 @@ pub async fn no(app: &TestApp, path: &str, body: &Value, status: u16) -> (String
 /// A rinse with what was read.
 pub fn rinsed(ph: f64, free_chlorine: &str) -> Value {
     json!({"class": "rinse", "duration": "PT1H",
-           "verified": {"ph": ph, "free_chlorine": free_chlorine, "by": "Kim"}})
+           "verified": {"ph": ph, "free_chlorine": free_chlorine, "by": "shift A"}})
 }
 
 /// Items of a list that is one page long.

@@ -17,10 +17,14 @@ async fn trains_say_what_stands() {
     // The second fouls three times as fast.
     let by_date = app.get_json("/v1/trains?order=clean_by").await;
     assert_eq!(ids(&by_date), ["uf-2", "uf-1"]);
-    assert_eq!(by_date["items"][0], all["items"][1]);
+    // The age of data grows from one request to the next; what stands does not.
+    let said = |t: &Value| t["standing"]["sentence"].as_str().unwrap().to_owned();
+    assert_eq!(said(&by_date["items"][0]), said(&all["items"][1]));
+    let walked = walk(app, "/v1/trains?order=clean_by&limit=1", "items").await;
+    let listed = by_date["items"].as_array().unwrap();
     assert_eq!(
-        walk(app, "/v1/trains?order=clean_by&limit=1", "items").await,
-        *by_date["items"].as_array().unwrap()
+        walked.iter().map(said).collect::<Vec<_>>(),
+        listed.iter().map(said).collect::<Vec<_>>()
     );
 
     let one = app.get_json("/v1/trains/uf-2").await;

@@ -7,7 +7,7 @@ const LIST: &str = "/v1/work-orders";
 
 /// An order by hand for the first train, by the site's procedure.
 async fn asked(app: &TestApp) -> String {
-    let body = json!({"train": "uf-1", "by": "Kim", "reason": "before the cold spell"});
+    let body = json!({"train": "uf-1", "by": "shift A", "reason": "before the cold spell"});
     let order = done(app, LIST, &body, 201).await;
     assert_eq!(order["state"], "draft");
     let number = order["number"].as_str().unwrap().strip_prefix("WO ").unwrap().to_owned();
@@ -19,7 +19,7 @@ fn actuals(order: &Value) -> Value {
     let mut steps = order["steps"].clone();
     for step in steps.as_array_mut().unwrap() {
         if step["class"] == "rinse" {
-            step["verified"] = json!({"ph": 7.2, "free_chlorine": 0.05, "by": "Kim"});
+            step["verified"] = json!({"ph": 7.2, "free_chlorine": 0.05, "by": "shift A"});
         }
     }
     json!({"start": "2026-03-10T07:00:00+00:00", "end": "2026-03-10T15:00:00+00:00",
@@ -31,8 +31,8 @@ async fn an_order_is_agreed_done_and_verified() {
     let app = site(DAYS * 24 - 2).await;
     let at = asked(&app).await;
     let path = |act: &str| format!("{at}/{act}");
-    let kim = json!({"by": "Kim"});
-    let sam = json!({"by": "Sam"});
+    let kim = json!({"by": "shift A"});
+    let sam = json!({"by": "shift B"});
 
     let draft = app.get_json(&at).await;
     assert_eq!((&draft["asset"], &draft["location"]), (&json!("MT-0101"), &draft["location"]));
@@ -48,23 +48,23 @@ async fn an_order_is_agreed_done_and_verified() {
     no(&app, &path("approve"), &sam, 409).await;
 
     let window = json!({"from": "2026-03-14T07:00:00Z", "to": "2026-03-14T15:00:00Z"});
-    let scheduled = json!({"by": "Kim", "window": window});
+    let scheduled = json!({"by": "shift A", "window": window});
     let order = done(&app, &path("schedule"), &scheduled, 200).await;
     assert_eq!(order["window"]["from"], "2026-03-14T07:00:00+00:00");
-    let began = json!({"by": "Sam", "at": "2026-03-10T07:00:00Z"});
+    let began = json!({"by": "shift B", "at": "2026-03-10T07:00:00Z"});
     let order = done(&app, &path("start"), &began, 200).await;
     assert_eq!(order["state"], "in_progress");
     let (_, pointer) = no(&app, &path("wait"), &sam, 422).await;
     assert_eq!(pointer, "/reason");
-    let waits = json!({"by": "Sam", "reason": "heater tripped"});
+    let waits = json!({"by": "shift B", "reason": "heater tripped"});
     assert_eq!(done(&app, &path("wait"), &waits, 200).await["state"], "waiting");
     done(&app, &path("start"), &sam, 200).await;
 
-    let mut body = json!({"by": "Sam", "actuals": actuals(&draft)});
-    body["actuals"]["steps"][1]["verified"] = json!({"ph": 7.2, "by": "Kim"});
+    let mut body = json!({"by": "shift B", "actuals": actuals(&draft)});
+    body["actuals"]["steps"][1]["verified"] = json!({"ph": 7.2, "by": "shift A"});
     let (detail, pointer) = no(&app, &path("complete"), &body, 422).await;
     assert_eq!(pointer, "/actuals/steps/1/verified/free_chlorine", "{detail}");
-    body["actuals"]["steps"][1]["verified"] = json!({"ph": "neutral", "by": "Kim"});
+    body["actuals"]["steps"][1]["verified"] = json!({"ph": "neutral", "by": "shift A"});
     let (_, pointer) = no(&app, &path("complete"), &body, 422).await;
     assert_eq!(pointer, "/actuals/steps/1/verified/ph");
     body["actuals"] = actuals(&draft);
@@ -74,17 +74,17 @@ async fn an_order_is_agreed_done_and_verified() {
 
     let told = format!("/v1/cleanings/{}", order["cleaning"].as_str().unwrap());
     let cleaning = app.get_json(&told).await;
-    assert_eq!((&cleaning["origin"], &cleaning["by"]), (&json!("recorded"), &json!("Sam")));
+    assert_eq!((&cleaning["origin"], &cleaning["by"]), (&json!("recorded"), &json!("shift B")));
     assert_eq!(cleaning["work_order"], order["number"]);
     assert_eq!(items(&app, "/v1/cleanings?train=uf-1").await.len(), 1, "seen and told is one");
 
-    let test = json!({"passed": true, "at": "2026-03-10T16:00:00Z", "by": "Sam"});
-    let verify = json!({"by": "Lee", "integrity_test": test});
+    let test = json!({"passed": true, "at": "2026-03-10T16:00:00Z", "by": "shift B"});
+    let verify = json!({"by": "shift C", "integrity_test": test});
     take(&app, &rows(&recipe_with_clean(), DAYS * 24 - 2, DAYS * 24)).await;
     let order = app.get_json(&at).await;
     assert_ne!(order["result"], Value::Null, "the verdict comes with the next hours: {order}");
     assert_eq!(order["result"]["verdict"], cleaning["verdict"]);
-    let (detail, pointer) = no(&app, &path("verify"), &json!({"by": "Lee"}), 422).await;
+    let (detail, pointer) = no(&app, &path("verify"), &json!({"by": "shift C"}), 422).await;
     assert_eq!(pointer, "/integrity_test", "{detail}");
     let order = done(&app, &path("verify"), &verify, 200).await;
     assert_eq!((&order["state"], &order["actions"]), (&json!("verified"), &json!([])));
@@ -96,7 +96,7 @@ async fn an_order_is_agreed_done_and_verified() {
         .collect();
     let (engineer, operator) = ("shift_engineer", "operator");
     assert_eq!(roles, [engineer, engineer, operator, operator, operator, operator, "process"]);
-    no(&app, &path("cancel"), &json!({"by": "Kim", "reason": "late"}), 409).await;
+    no(&app, &path("cancel"), &json!({"by": "shift A", "reason": "late"}), 409).await;
 
     // The journal holds every act once, with what it changed.
     let number = at.rsplit('/').next().unwrap();
@@ -107,14 +107,14 @@ async fn an_order_is_agreed_done_and_verified() {
     assert_eq!(
         told,
         [
-            ("drafted", "Kim", Some("draft")),
-            ("approved", "Kim", Some("approved")),
-            ("scheduled", "Kim", Some("scheduled")),
-            ("started", "Sam", Some("in_progress")),
-            ("waits", "Sam", Some("waiting")),
-            ("started", "Sam", Some("in_progress")),
-            ("completed", "Sam", Some("done")),
-            ("verified", "Lee", Some("verified")),
+            ("drafted", "shift A", Some("draft")),
+            ("approved", "shift A", Some("approved")),
+            ("scheduled", "shift A", Some("scheduled")),
+            ("started", "shift B", Some("in_progress")),
+            ("waits", "shift B", Some("waiting")),
+            ("started", "shift B", Some("in_progress")),
+            ("completed", "shift B", Some("done")),
+            ("verified", "shift C", Some("verified")),
         ]
     );
     assert_eq!(acts[4].reason.as_deref(), Some("heater tripped"));
@@ -124,7 +124,7 @@ async fn an_order_is_agreed_done_and_verified() {
 #[tokio::test(flavor = "multi_thread")]
 async fn a_plan_that_lets_chemicals_meet_is_not_approved() {
     let app = site(24).await;
-    let plan = |steps: Value| json!({"train": "uf-1", "by": "Kim", "steps": steps});
+    let plan = |steps: Value| json!({"train": "uf-1", "by": "shift A", "steps": steps});
     let bare = plan(json!([
         {"chemical": "sodium hypochlorite", "concentration": "400 mg/L"},
         {"chemical": "citric acid", "concentration": "1 %"},
@@ -133,7 +133,7 @@ async fn a_plan_that_lets_chemicals_meet_is_not_approved() {
     let order = done(&app, LIST, &bare, 201).await;
     assert_eq!(order["steps"][0]["class"], "hypochlorite", "by its name");
     let path = format!("{LIST}/{}/approve", order["number"].as_str().unwrap());
-    let got = post(&app, &path.replace(' ', "%20"), &json!({"by": "Kim"})).await;
+    let got = post(&app, &path.replace(' ', "%20"), &json!({"by": "shift A"})).await;
     assert_eq!(got.status, 422, "{got:?}");
     let problem = got.json();
     assert_eq!(problem["errors"][0]["pointer"], "/steps/1");
@@ -144,22 +144,22 @@ async fn a_plan_that_lets_chemicals_meet_is_not_approved() {
     let (detail, pointer) = no(&app, LIST, &plan(json!([])), 409).await;
     assert_eq!(pointer, "/train");
     assert!(detail.contains(order["number"].as_str().unwrap()), "{detail}");
-    let strong = json!({"train": "uf-2", "by": "Kim", "steps": [
+    let strong = json!({"train": "uf-2", "by": "shift A", "steps": [
         {"class": "hypochlorite", "concentration": "2 %"},
         {"class": "rinse", "verified": {"ph_range": [6, 9], "free_chlorine_max": 0.5}}
     ]});
     let order = done(&app, LIST, &strong, 201).await;
     let number = order["number"].as_str().unwrap().strip_prefix("WO ").unwrap().to_owned();
     let path = format!("{LIST}/{number}/approve");
-    let (detail, pointer) = no(&app, &path, &json!({"by": "Kim"}), 422).await;
+    let (detail, pointer) = no(&app, &path, &json!({"by": "shift A"}), 422).await;
     assert_eq!(pointer, "/steps/0/concentration");
     assert!(detail.contains("step 1") && detail.contains("membrane"), "{detail}");
 
     for (body, status, pointer) in [
-        (json!({"train": "uf-9", "by": "Kim"}), 422, "/train"),
-        (json!({"train": "uf-1", "by": "Kim", "needed_by": "Monday"}), 422, "/needed_by"),
+        (json!({"train": "uf-9", "by": "shift A"}), 422, "/train"),
+        (json!({"train": "uf-1", "by": "shift A", "needed_by": "Monday"}), 422, "/needed_by"),
         (json!({"train": "uf-1", "by": "washbell"}), 422, "/by"),
-        (json!({"train": "uf-1", "by": "Kim", "colour": "red"}), 422, "/colour"),
+        (json!({"train": "uf-1", "by": "shift A", "colour": "red"}), 422, "/colour"),
     ] {
         assert_eq!(no(&app, LIST, &body, status).await.1, pointer, "{body}");
     }
@@ -184,9 +184,10 @@ async fn two_people_do_not_overwrite_each_other() {
 async fn orders_are_listed_by_state_and_named_in_the_other_system() {
     let app = site(24).await;
     let at = asked(&app).await;
-    let second = json!({"train": "uf-2", "by": "Kim", "kind": "maintenance_clean"});
+    let second = json!({"train": "uf-2", "by": "shift A", "kind": "maintenance_clean"});
     done(&app, LIST, &second, 201).await;
-    done(&app, &format!("{LIST}/2/cancel"), &json!({"by": "Kim", "reason": "no crew"}), 200).await;
+    done(&app, &format!("{LIST}/2/cancel"), &json!({"by": "shift A", "reason": "no crew"}), 200)
+        .await;
     let numbers = |list: Vec<Value>| -> Vec<String> {
         list.iter().map(|o| o["number"].as_str().unwrap().to_owned()).collect()
     };
@@ -222,7 +223,7 @@ async fn a_cleaning_that_names_an_order_completes_it() {
     let number = app.get_json(&at).await["number"].clone();
     let body = json!({
         "train": "uf-1", "start": "2026-03-10T07:00:00Z", "end": "2026-03-10T15:00:00Z",
-        "kind": "clean_in_place", "work_order": number, "by": "Kim",
+        "kind": "clean_in_place", "work_order": number, "by": "shift A",
         "steps": [{"chemical": "citric acid", "concentration": "1 %"}, rinsed(7.0, "0.1 mg/L")]
     });
     let cleaning = done(&app, "/v1/cleanings", &body, 201).await;
@@ -250,9 +251,9 @@ async fn a_clean_told_before_its_order_is_done_stays_one_record() {
                       "kind": "clean_in_place", "steps": done_then["steps"]});
     let cleaning = done(&app, "/v1/cleanings", &body, 201).await;
     assert_eq!(app.get_json(&at).await["state"], "draft", "it did not name the order");
-    done(&app, &format!("{at}/approve"), &json!({"by": "Kim"}), 200).await;
-    done(&app, &format!("{at}/start"), &json!({"by": "Kim"}), 200).await;
-    let mut off = json!({"by": "Kim", "actuals": done_then});
+    done(&app, &format!("{at}/approve"), &json!({"by": "shift A"}), 200).await;
+    done(&app, &format!("{at}/start"), &json!({"by": "shift A"}), 200).await;
+    let mut off = json!({"by": "shift A", "actuals": done_then});
     off["actuals"]["end"] = json!("2026-03-10T15:30:00Z");
     let complete = format!("{at}/complete");
     let (detail, pointer) = no(&app, &complete, &off, 409).await;

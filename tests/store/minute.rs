@@ -336,32 +336,3 @@ async fn hours_and_days_stand_in_the_units_of_the_trade() {
     close(row.get("start_permeability_l_m2_h_bar"), lmh_bar, 1e-8, "permeability");
     close(row.get("filtered_l_m2"), day.volume_m * 1000.0, 1e-12, "volume");
 }
-
-// TEMPORARY
-#[tokio::test]
-async fn zz_measure() {
-    let given = given().await;
-    let start = Instant::parse("2026-01-28T00:00:00Z").unwrap();
-    let mut recipe = Recipe::plain(3, Zone::named("Europe/London").unwrap(), start, 8);
-    recipe.noise = Noise::usual();
-    recipe.dirt = Dirt::usual();
-    recipe.temperature = TemperatureRecipe::seasonal();
-    let plant = plant_of(&sim::plant_toml(&recipe, "127.0.0.1:0", "x.db"));
-    let span = Span::new(recipe.start, recipe.start.plus(60 * DAY_US));
-    let mut text = sim::header(&recipe);
-    Simulation::new(recipe).write_rows(span.to, &mut text);
-    take(&given, &plant, &text, span.to).await;
-    let pool = shell(&given).await;
-    std::fs::copy(given.folder.path().join("copy.db"), "/tmp/views_scratch/real.db").unwrap();
-    let mut all = Vec::new();
-    for d in 0..20 {
-        for train in &plant.trains {
-            let day = Span::new(start.plus((2 * d + 5) * DAY_US), start.plus((2 * d + 6) * DAY_US));
-            let t = std::time::Instant::now();
-            let n = rows(&pool, &plant, train, day).await.len();
-            all.push((t.elapsed(), n));
-        }
-    }
-    all.sort();
-    println!("MEASURED best {:?} median {:?} worst {:?}", all[0], all[80], all[159]);
-}

@@ -47,7 +47,7 @@ fn steps() -> Vec<Step> {
 fn order(plant: &Plant) -> WorkOrder {
     let asked = ByHand {
         task: Task::CleanInPlace,
-        by: "Kim".to_owned(),
+        by: "shift A".to_owned(),
         reason: Some("before the cold spell.".to_owned()),
         steps: Some(steps()),
         needed_by: Some(at("2026-03-12T12:00")),
@@ -84,9 +84,9 @@ fn a_draft_is_what_a_crew_can_work_from() {
         json!({
             "number": "WO 41", "train": "uf-1", "state": "draft", "asset": "MT-0101",
             "location": "UF train 1", "kind": "clean_in_place",
-            "task": "Clean the train in place. Kim asks for it: before the cold spell. Needed by \
+            "task": "Clean the train in place. shift A asks for it: before the cold spell. Needed by \
                      Thursday 12 March 12:00: start by Wednesday 11 March 04:00.",
-            "requested_by": "Kim", "request": "before the cold spell.",
+            "requested_by": "shift A", "request": "before the cold spell.",
             "raised": "2026-03-08T07:00:00+00:00", "evidence": [],
             "needed_by": "2026-03-12T12:00:00+00:00", "start_by": "2026-03-11T04:00:00+00:00",
             "window": {"from": "2026-03-10T07:00:00+00:00", "to": "2026-03-10T15:00:00+00:00"},
@@ -141,7 +141,7 @@ fn a_done_order_shows_what_was_done_and_what_it_was_worth() {
     order.sign_offs.push(SignOff {
         role: Role::Operator,
         act: ActKind::Complete,
-        by: "Sam".to_owned(),
+        by: "shift B".to_owned(),
         at: at("2026-03-10T15:00"),
         note: None,
     });
@@ -150,7 +150,7 @@ fn a_done_order_shows_what_was_done_and_what_it_was_worth() {
         .annotations
         .push(Annotation { at: at("2026-03-10T15:00"), note: Note::SeenCleaned(span) });
     order.integrity_test =
-        Some(IntegrityTest { passed: true, at: at("2026-03-10T15:30"), by: "Sam".to_owned() });
+        Some(IntegrityTest { passed: true, at: at("2026-03-10T15:30"), by: "shift B".to_owned() });
     order.external =
         Some(External { system: "maintenance".to_owned(), number: "77".to_owned(), url: None });
     let v = view(&plant, &order, UnitSystem::Si);
@@ -171,7 +171,7 @@ fn a_done_order_shows_what_was_done_and_what_it_was_worth() {
     assert_eq!(result["figures"]["best"], 230.0);
     assert_eq!(
         v["sign_offs"],
-        json!([{"role": "operator", "act": "complete", "by": "Sam",
+        json!([{"role": "operator", "act": "complete", "by": "shift B",
                 "at": "2026-03-10T15:00:00+00:00", "note": null}])
     );
     assert_eq!(

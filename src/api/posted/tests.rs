@@ -42,10 +42,10 @@ fn a_class_left_out_is_that_of_the_name() {
 #[test]
 fn readings_of_a_rinse_are_kept_apart_from_what_passes() {
     let of = |verified: Value| read(json!({"class": "rinse", "verified": verified}));
-    let (step, faults) = of(json!({"ph": 7.2, "free_chlorine": 0.1, "by": "Kim"}));
+    let (step, faults) = of(json!({"ph": 7.2, "free_chlorine": 0.1, "by": "shift A"}));
     let v = step.verified.unwrap();
     assert_eq!((v.ph, v.free_chlorine_mg_l, v.ph_range), (Some(7.2), Some(0.1), None));
-    assert_eq!((v.by.as_deref(), faults.len()), (Some("Kim"), 0));
+    assert_eq!((v.by.as_deref(), faults.len()), (Some("shift A"), 0));
     for planned in [
         json!({"ph": "6 .. 9", "free_chlorine_max": "0.5 mg/L"}),
         json!({"ph_range": [6.0, 9.0], "free_chlorine_max": 0.5}),

@@ -95,7 +95,7 @@ fn read(ph: Option<f64>, chlorine: Option<f64>, by: &str) -> Step {
 }
 
 fn passed() -> Step {
-    read(Some(7.2), Some(0.1), "Kim")
+    read(Some(7.2), Some(0.1), "shift A")
 }
 
 fn last(class: StepClass) -> LastChemical {
@@ -170,11 +170,11 @@ fn drafted() -> WorkOrder {
 }
 
 fn act(deed: Deed) -> OrderAct {
-    OrderAct { by: "Kim".to_owned(), reason: Some("as talked over".to_owned()), deed }
+    OrderAct { by: "shift A".to_owned(), reason: Some("as talked over".to_owned()), deed }
 }
 
 fn test_passed() -> IntegrityTest {
-    IntegrityTest { passed: true, at: at(39), by: "Kim".to_owned() }
+    IntegrityTest { passed: true, at: at(39), by: "shift A".to_owned() }
 }
 
 /// A deed of a kind that meets its terms on [`drafted`] at hour 100.

@@ -24,13 +24,13 @@ fn every_state_meets_every_act() {
         let order = led_to(from);
         for kind in ActKind::ALL {
             let mut act = good(kind);
-            act.by = "Sam".to_owned();
+            act.by = "shift B".to_owned();
             let result = does(&order, &act);
             if allowed.contains(&kind.leads_to()) {
                 let next = result.unwrap();
                 assert_eq!(next.state, kind.leads_to(), "{kind:?} from {from:?}");
                 let signed = next.sign_offs.last().unwrap();
-                assert_eq!((signed.act, signed.by.as_str()), (kind, "Sam"));
+                assert_eq!((signed.act, signed.by.as_str()), (kind, "shift B"));
                 assert_eq!(signed.role, kind.role());
             } else {
                 let why = result.unwrap_err().why;

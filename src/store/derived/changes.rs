@@ -79,7 +79,7 @@ impl Changes {
             cycles::of_day(&mut self.tx, &self.plant, train, day).await?
         };
         let hour = first_difference(&before, &rows.hours, |a, b| a == b, |h| h.start);
-        let cycle = first_difference(&had, &rows.cycles, same_cycle, |c| c.decided);
+        let cycle = first_difference(&had, &rows.cycles, same_cycle, |c| c.start);
         // What stands before the first difference stays: an hourly post changes a day's end.
         if let Some((same, from)) = hour {
             self.clear(hours::CLEAR, train, Span::new(from, day.to), None).await?;
@@ -101,8 +101,12 @@ impl Changes {
             }
             None => self.clear(now::CLEAR, train, day, None).await?,
         }
-        let first_of_cycle = cycle.map(|(_, from)| from.max(day.from));
-        Ok(hour.map(|(_, from)| from).into_iter().chain(first_of_cycle).min())
+        // A cycle changes answers from when its end was known: it may have begun hours before.
+        let decided = |(same, _): (usize, Instant)| {
+            let both = had.get(same).into_iter().chain(rows.cycles.get(same));
+            both.map(|c| c.decided).min()
+        };
+        Ok(hour.map(|(_, from)| from).into_iter().chain(cycle.and_then(decided)).min())
     }
 
     async fn clear(

@@ -131,7 +131,7 @@ fn a_train_is_that_of_the_interface() {
                 },
                 "binding": "permeability_loss_clean", "advice": "clean_in_place",
                 "distrusted": [], "data_age": "PT2M", "stale": false,
-                "as_of": "2026-03-08T06:00:00+00:00",
+                "as_of": "2026-03-08T05:59:00+00:00",
                 "sentence": "Lost 27.4 % of permeability against the last clean that restored it \
                              (baseline 231 L/(m²·h·bar)); clean limit (30 %) most likely Thursday \
                              12 March, one chance in ten before Tuesday 10 March: start the clean \
