@@ -28,7 +28,7 @@ async fn trains_say_what_stands() {
     );
 
     let one = app.get_json("/v1/trains/uf-2").await;
-    assert_eq!(one["standing"]["as_of"], "2026-03-14T00:00:00+00:00");
+    assert_eq!(one["standing"]["as_of"], "2026-03-13T23:59:00+00:00");
     assert_eq!(one["standing"]["stale"], false);
     assert!(!one["standing"]["sentence"].as_str().unwrap().is_empty());
     assert_ne!(one["standing"]["advice"], "cannot_advise");
