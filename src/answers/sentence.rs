@@ -122,6 +122,12 @@ impl Told<'_> {
             let reasons = reasons_words(&self.standing.troubles);
             sentences.push(format!("In the last day hours could not be used: {reasons}"));
         }
+        if !self.case.unknown_codes.is_empty() {
+            sentences.push(format!(
+                "The state read {}, which the plant file does not name: those minutes count as nothing.",
+                self.case.unknown_codes.join(", ")
+            ));
+        }
         sentences.join(" ")
     }
 

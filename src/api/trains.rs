@@ -96,6 +96,7 @@ fn shown(
         now: state.now.as_ref(),
         wall,
         stale_after_us: stale_after_us(plant, train),
+        unknown_codes: &state.unknown_codes,
     };
     train_view(units, &case)
 }

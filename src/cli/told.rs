@@ -63,6 +63,7 @@ fn write(
             now: state.now.as_ref(),
             wall: clock.now(),
             stale_after_us: work::stale_after_us(plant, state.site.train),
+            unknown_codes: &state.unknown_codes,
         };
         let orders: Vec<String> =
             mine.iter().filter_map(|r| r.work_order).map(|n| format!(" (WO {n})")).collect();

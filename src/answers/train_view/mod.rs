@@ -42,6 +42,8 @@ pub struct StandingView {
     pub advice: String,
     /// Instruments whose readings could not be used in the last day.
     pub distrusted: Vec<DistrustedView>,
+    /// State codes read on the newest day that the plant file does not name.
+    pub unknown_state_codes: Vec<String>,
     /// Age of the newest reading by the wall clock, ISO 8601; null without a reading.
     pub data_age: Option<String>,
     /// Whether that is beyond the age at which advice ends.
@@ -136,6 +138,8 @@ pub struct TrainCase<'a> {
     pub wall: Instant,
     /// Beyond this age of the newest reading there is no advice.
     pub stale_after_us: i64,
+    /// State codes that the plant file does not name.
+    pub unknown_codes: &'a [String],
 }
 
 impl TrainCase<'_> {
@@ -185,6 +189,7 @@ fn standing_view(units: &Units, case: &TrainCase) -> StandingView {
         binding: binding.map(|(kind, _)| kind.code().to_owned()),
         advice: advice.to_owned(),
         distrusted: distrusted(case),
+        unknown_state_codes: case.unknown_codes.to_vec(),
         data_age: case.age_us().map(duration_text),
         stale: case.is_stale(),
         as_of: PlantTime::optional(zone, case.newest()),

@@ -69,6 +69,7 @@ impl Held {
             now: Some(&self.now),
             wall: self.wall,
             stale_after_us: 3 * HOUR_US,
+            unknown_codes: &[],
         };
         train_view(&Units::new(self.units), &case)
     }
@@ -130,7 +131,7 @@ fn a_train_is_that_of_the_interface() {
                         "p10": null, "p50": null, "p90": null}
                 },
                 "binding": "permeability_loss_clean", "advice": "clean_in_place",
-                "distrusted": [], "data_age": "PT2M", "stale": false,
+                "distrusted": [], "unknown_state_codes": [], "data_age": "PT2M", "stale": false,
                 "as_of": "2026-03-08T05:59:00+00:00",
                 "sentence": "Lost 27.4 % of permeability against the last clean that restored it \
                              (baseline 231 L/(m²·h·bar)); clean limit (30 %) most likely Thursday \
@@ -153,6 +154,7 @@ fn a_train_without_data_says_so() {
         now: None,
         wall: at("2026-03-08T06:01"),
         stale_after_us: 3 * HOUR_US,
+        unknown_codes: &[],
     };
     let s = train_view(&Units::new(UnitSystem::Us), &case).standing;
     assert_eq!((s.state.as_str(), s.advice.as_str()), ("unknown", "cannot_advise"));
