@@ -14,6 +14,11 @@ const REFUSED: &[(&str, &str, &str)] = &[
     ("like", "", "a format by example is not read by this version; write it as `format`"),
 ];
 
+/// A meter that serves several trains is refused: its flow is not apportioned, and divided by
+/// one train's area it would be a number that nobody could trust.
+pub(super) const SHARED_METERS: &str =
+    "a flow meter that serves several trains is not worked by this version";
+
 /// Trains whose state has to be inferred are refused.
 pub(super) const STATE_IS_NEEDED: bool = true;
 

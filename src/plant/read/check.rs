@@ -6,7 +6,7 @@ use super::tags::Placed;
 use super::train::PlacedTrain;
 use crate::base::{TrainId, nearest};
 use crate::plant::membrane::beyond;
-use crate::plant::not_yet::STATE_IS_NEEDED;
+use crate::plant::not_yet::{SHARED_METERS, STATE_IS_NEEDED};
 use crate::plant::{Drive, Filtration, MembraneLimits, Role};
 
 /// Checks trains against each other and in themselves, and gives every train the signals of the
@@ -64,6 +64,10 @@ fn serves(report: &Report<'_>, trains: &[PlacedTrain]) {
                 if served.iter().take(at).any(|other| other == id) {
                     report.mistake(span, format!("`{id}` is served twice"));
                 }
+            }
+            let known = served.iter().all(|id| ids.contains(&id.as_str()));
+            if known && served.len() > 1 {
+                report.mistake(span, SHARED_METERS);
             }
             if !served.contains(&train.train.id) {
                 let id = &train.train.id;
